@@ -1,3 +1,4 @@
+using System.Runtime.CompilerServices;
 using CycleSim.Scalars;
 
 namespace CycleSim.Components;
@@ -25,7 +26,7 @@ public static class Combustor
         var f = model.FuelForTemperature(air.Tt.Value, air.H.Value, t4.Value, q.Value, efficiency, out var d);
         var ratio = T.Chain(f, air.H, d.H3, t4, d.T4, q, d.Q) + T.Chain(0.0, air.Tt, d.T3);
         fuelFlow = air.W * ratio;
-        burnt = default;
+        Unsafe.SkipInit(out burnt);
         burnt.W = model.CountsFuelMass ? air.W + fuelFlow : air.W;
         burnt.P = air.P * pressureRatio;
         burnt.Tt = t4;

@@ -1,3 +1,4 @@
+using System.Runtime.CompilerServices;
 using CycleSim.Scalars;
 
 namespace CycleSim.Components;
@@ -18,7 +19,9 @@ public static class Compressor
     )
         where T : struct, IScalar<T>
     {
-        outlet = inlet;
+        Unsafe.SkipInit(out outlet);
+        outlet.W = inlet.W;
+        outlet.Y = inlet.Y;
         outlet.P = inlet.P * pressureRatio;
         var ideal = gas.EnthalpyAtEntropy(inlet.Phi + gas.GasConstant(inlet.Y) * T.Log(pressureRatio), inlet.Y);
         outlet.H = inlet.H + (ideal - inlet.H) / efficiency;

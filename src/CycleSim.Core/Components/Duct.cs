@@ -6,14 +6,12 @@ namespace CycleSim.Components;
 public static class Duct
 {
     /// <summary>
-    /// Loss of total pressure in proportion to the square of the corrected flow, from the loss at the design point.
+    /// Total pressure left behind a passage whose loss goes with the square of the corrected flow, over the one ahead.
     /// </summary>
-    public static void Apply<T>(in FlowState<T> upstream, double designLoss, in T correctedFlowRatio, out FlowState<T> downstream)
-        where T : struct, IScalar<T>
-    {
-        downstream = upstream;
-        downstream.P = upstream.P * (1.0 - correctedFlowRatio * correctedFlowRatio * designLoss);
-    }
+    /// <param name="designLoss">loss over inlet total pressure at the design point</param>
+    /// <param name="correctedFlowRatio">corrected flow over that of the design point</param>
+    public static T PressureRatio<T>(double designLoss, in T correctedFlowRatio)
+        where T : struct, IScalar<T> => 1.0 - correctedFlowRatio * correctedFlowRatio * designLoss;
 
     /// <summary>
     /// Corrected flow W sqrt(R T) / P, m2: the capacity of a passage freed of units and of the gas constant, so that it

@@ -73,30 +73,35 @@ public readonly struct GasRelations<T>(GasModel gas, in T specificHumidity)
     /// <summary>Sets the total state of a stream from its temperature.</summary>
     public void CompleteFromTemperature(ref FlowState<T> s) => AtTemperature(s.Tt, s.Y, out s.H, out s.Phi);
 
-    /// <summary>
-    /// Temperature at which a stream of given total enthalpy moves at the speed of sound, from
-    /// h0 - h(T) = gamma R T / 2. Solved in doubles; the derivatives come from one Newton step in <typeparamref name="T"/>.
-    /// </summary>
-    public T SonicTemperature(in T h0, in T t0, in T y)
+    /// <summary>Enthalpy and temperature at a value of the entropy function.</summary>
+    public void AtEntropy(in T phi, in T y, out T h, out T t)
     {
-        var r = Model.GasConstant(y.Value, _q.Value);
-        var t = 0.86 * t0.Value;
-        var slope = 1.0;
-        for (var i = 0; i < 8; i++)
-        {
-            Model.AtTemperature(t, y.Value, _q.Value, out var p);
-            var k = p.Cp / (p.Cp - r);
-            slope = -p.Cp - 0.5 * r * (k - t * r * p.CpT / ((p.Cp - r) * (p.Cp - r)));
-            var step = (p.H + 0.5 * k * r * t - h0.Value) / slope;
-            t += step;
-            if (Math.Abs(step) < 1e-7 * t)
-                break;
-        }
+        Model.AtEntropy(phi.Value, y.Value, _q.Value, out var p);
+        h = T.Chain(p.H, phi, p.T, y, p.Hy - p.T * p.Phiy, _q, p.Hq - p.T * p.Phiq);
+        var k = p.T / p.Cp;
+        t = T.Chain(p.T, phi, k, y, -k * p.Phiy, _q, -k * p.Phiq);
+    }
 
-        var fixedT = T.Constant(t);
-        AtTemperature(fixedT, y, out var h, out _, out var cp);
+    /// <summary>
+    /// State in which a stream of given total enthalpy moves at the speed of sound, from h0 - h(T) = gamma R T / 2. One
+    /// Newton step in doubles from a close start; the derivatives come from a second one in <typeparamref name="T"/>.
+    /// </summary>
+    public void Sonic(in T h0, in T t0, in T y, out T t, out T h, out T phi)
+    {
+        var q = _q.Value;
+        var r = Model.GasConstant(y.Value, q);
+        var guess = Model.SonicStart(t0.Value, y.Value, q);
+        Model.AtTemperature(guess, y.Value, q, out var p);
+        var k = p.Cp / (p.Cp - r);
+        var slope = -p.Cp - 0.5 * r * (k - guess * r * p.CpT / ((p.Cp - r) * (p.Cp - r)));
+        guess -= (h0.Value - p.H - 0.5 * k * r * guess) / slope;
+
+        var start = T.Constant(guess);
+        AtTemperature(start, y, out h, out phi, out var cp);
         var gas = GasConstant(y);
-        var imbalance = h0 - h - cp * gas / (cp - gas) * (0.5 * t);
-        return fixedT - imbalance / slope;
+        var step = (h + cp * gas / (cp - gas) * (0.5 * guess) - h0) / slope;
+        t = start + step;
+        h += cp * step;
+        phi += cp * step / guess;
     }
 }

@@ -1,3 +1,4 @@
+using System.Runtime.CompilerServices;
 using CycleSim.Scalars;
 
 namespace CycleSim.Components;
@@ -41,11 +42,10 @@ public static class Nozzle
     )
         where T : struct, IScalar<T>
     {
-        jet = default;
+        Unsafe.SkipInit(out jet);
         var r = gas.GasConstant(inlet.Y);
 
-        var sonic = gas.SonicTemperature(inlet.H, inlet.Tt, inlet.Y);
-        gas.AtTemperature(sonic, inlet.Y, out var sonicEnthalpy, out var phiThroat);
+        gas.Sonic(inlet.H, inlet.Tt, inlet.Y, out var sonic, out var sonicEnthalpy, out var phiThroat);
         if (efficiency < 1.0)
             phiThroat = gas.EntropyAtEnthalpy(inlet.H - (inlet.H - sonicEnthalpy) / efficiency, inlet.Y);
         var critical = inlet.P * T.Exp((phiThroat - inlet.Phi) / r);
@@ -60,9 +60,11 @@ public static class Nozzle
         else
         {
             jet.ExitPressure = ambientPressure;
-            var ideal = gas.EnthalpyAtEntropy(inlet.Phi + r * T.Log(ambientPressure / inlet.P), inlet.Y);
+            var phiExit = inlet.Phi + r * T.Log(ambientPressure / inlet.P);
+            gas.AtEntropy(phiExit, inlet.Y, out var ideal, out jet.ExitTemperature);
             var drop = (inlet.H - ideal) * efficiency;
-            gas.AtEnthalpy(inlet.H - drop, inlet.Y, out jet.ExitTemperature, out _);
+            if (efficiency < 1.0)
+                gas.AtEnthalpy(inlet.H - drop, inlet.Y, out jet.ExitTemperature, out _);
             jet.Speed = SpeedFromDrop(drop);
         }
 

@@ -1,3 +1,4 @@
+using System.Runtime.CompilerServices;
 using CycleSim.Scalars;
 
 namespace CycleSim.Components;
@@ -19,7 +20,9 @@ public static class Turbine
     )
         where T : struct, IScalar<T>
     {
-        outlet = inlet;
+        Unsafe.SkipInit(out outlet);
+        outlet.W = inlet.W;
+        outlet.Y = inlet.Y;
         outlet.H = inlet.H - work;
         gas.CompleteFromEnthalpy(ref outlet);
         var phiIdeal = gas.EntropyAtEnthalpy(inlet.H - work / efficiency, inlet.Y);

@@ -209,7 +209,7 @@ public sealed class FlowPath<T>
             Sizing.ScaleCompressor(_engine, gas, k, inlet);
         Read(gas, compressor, k + 1, inlet, out var correctedFlow, out var rise, out var efficiency);
         if (duct > 0.0)
-            Duct.Apply(inlet, duct, correctedFlow / compressor.DesignFlow, out inlet);
+            inlet.P *= Duct.PressureRatio(duct, correctedFlow / compressor.DesignFlow);
         var mapFlow = correctedFlow * inlet.P / T.Sqrt(gas.GasConstant(inlet.Y) * inlet.Tt);
         if (k == 0)
         {
@@ -288,7 +288,7 @@ public sealed class FlowPath<T>
         var correctedFlow = Duct.CorrectedFlow(gas, BypassExit);
         if (_sizing)
             _engine.BypassDuctFlow = correctedFlow.Value;
-        Duct.Apply(BypassExit, loss, correctedFlow / _engine.BypassDuctFlow, out BypassExit);
+        BypassExit.P *= Duct.PressureRatio(loss, correctedFlow / _engine.BypassDuctFlow);
     }
 
     private void Burn(in GasRelations<T> gas)
@@ -298,8 +298,7 @@ public sealed class FlowPath<T>
         var correctedFlow = Duct.CorrectedFlow(gas, CombustorInlet);
         if (_sizing)
             _engine.CombustorFlow = correctedFlow.Value;
-        var ratio = correctedFlow / _engine.CombustorFlow;
-        var pressureRatio = 1.0 - ratio * ratio * combustor.PressureLoss;
+        var pressureRatio = Duct.PressureRatio(combustor.PressureLoss, correctedFlow / _engine.CombustorFlow);
         var t4 = Unknowns[^1] * 1000.0;
         Combustor.Burn(gas, CombustorInlet, t4, pressureRatio, combustor.Efficiency, out CombustorExit, out FuelFlow);
     }
@@ -317,8 +316,7 @@ public sealed class FlowPath<T>
         {
             if (_sizing)
                 turbine.DesignFlow = correctedFlow.Value;
-            var ratio = correctedFlow / turbine.DesignFlow;
-            var pressureRatio = 1.0 - ratio * ratio * duct;
+            var pressureRatio = Duct.PressureRatio(duct, correctedFlow / turbine.DesignFlow);
             inlet.P *= pressureRatio;
             correctedFlow /= pressureRatio;
         }
@@ -378,7 +376,7 @@ public sealed class FlowPath<T>
             var correctedFlow = Duct.CorrectedFlow(gas, CoreExit);
             if (_sizing)
                 _engine.CoreDuctFlow = correctedFlow.Value;
-            Duct.Apply(CoreExit, definition.CoreDuctLoss, correctedFlow / _engine.CoreDuctFlow, out CoreExit);
+            CoreExit.P *= Duct.PressureRatio(definition.CoreDuctLoss, correctedFlow / _engine.CoreDuctFlow);
         }
 
         Nozzle.Expand(gas, CoreExit, ambient, definition.CoreNozzle.Efficiency, out CoreJet);

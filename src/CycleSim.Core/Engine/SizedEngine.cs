@@ -72,6 +72,9 @@ public sealed class SizedEngine
 
     public double DesignRotorInlet { get; internal set; }
 
+    /// <summary>Combustor exit temperature at the design point, K.</summary>
+    public double DesignT4 => DesignUnknowns[^1] * 1000.0;
+
     /// <summary>Net thrust at the design point, N: the scale of the thrust conditions.</summary>
     public double DesignThrust { get; internal set; }
 }

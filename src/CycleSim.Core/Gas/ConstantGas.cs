@@ -69,6 +69,13 @@ public sealed class ConstantGas : GasModel
         Fill(Math.Exp(logT), logT, y, ref point);
     }
 
+    public override double SonicStart(double totalTemperature, double y, double q)
+    {
+        // h0 = h + a2/2 with cp constant: T*/T0 = 2/(gamma + 1).
+        var gamma = Cp(y) / (Cp(y) - GasConstant(y, q));
+        return totalTemperature * 2.0 / (gamma + 1.0);
+    }
+
     public override double FuelForTemperature(
         double t3,
         double h3,
@@ -85,6 +92,8 @@ public sealed class ConstantGas : GasModel
         slopes.Q = 0.0;
         return f;
     }
+
+    public override double FuelEnthalpyFlow(double fuelFlow, double efficiency) => double.NaN;
 
     public override double BurntFraction(double fuelAirRatio, out double slope)
     {

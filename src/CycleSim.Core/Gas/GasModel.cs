@@ -40,6 +40,9 @@ public abstract class GasModel
     /// <summary>Properties at a value of the entropy function: the inverse of Phi(T).</summary>
     public abstract void AtEntropy(double phi, double y, double q, out GasPoint point);
 
+    /// <summary>A close guess (K) of the temperature at which a stream of given total temperature is sonic.</summary>
+    public abstract double SonicStart(double totalTemperature, double y, double q);
+
     /// <summary>
     /// Fuel per kilogram of air that must be burnt to raise it from (t3, h3) to t4 with the given combustion efficiency,
     /// and its partial derivatives. Negative where t4 lies below t3: the caller decides what that means.
@@ -52,6 +55,12 @@ public abstract class GasModel
         double efficiency,
         out FuelSlopes slopes
     );
+
+    /// <summary>
+    /// Energy that a fuel flow brings with it, W: enthalpy of formation less what is left unburnt. NaN where the model has
+    /// no enthalpies of formation.
+    /// </summary>
+    public abstract double FuelEnthalpyFlow(double fuelFlow, double efficiency);
 
     /// <summary>Composition y of the burnt stream for a fuel-air ratio, and its slope.</summary>
     public abstract double BurntFraction(double fuelAirRatio, out double slope);

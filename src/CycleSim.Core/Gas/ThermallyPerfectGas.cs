@@ -21,20 +21,20 @@ public sealed class ThermallyPerfectGas : GasModel
     private const double Reference = 298.15;
     private const double Join = 1000.0;
     private const int Cells = 128;
+    private const int Terms = 10;
 
-    // One entry per range (below, above 1000 K) and coefficient; lanes: air, water, fuel line, unused.
-    private readonly Vector256<double>[] _cp = new Vector256<double>[2 * 7];
-    private readonly Vector256<double>[] _b1 = new Vector256<double>[2];
-    private readonly Vector256<double>[] _b2 = new Vector256<double>[2];
+    // For each range (below, above 1000 K) and line (air, water, fuel line) eleven coefficients, of 1/T3 to T5 and of ln T;
+    // the lanes of each are the four temperature functions h, Phi, cp, dcp/dT.
+    private readonly Vector256<double>[] _terms = new Vector256<double>[2 * 3 * Terms];
 
     private readonly double[] _hReference = new double[3];
     private readonly double[] _phiReference = new double[3];
     private readonly double _fuelEnthalpy;
 
-    // Starting temperatures over sensible enthalpy and over the entropy function; lanes: air, its change per unit of q,
-    // its change per unit of y.
+    // Starting temperatures over sensible enthalpy, over the entropy function, over the total temperature of a sonic stream.
     private readonly StartTable _byEnthalpy,
-        _byEntropy;
+        _byEntropy,
+        _bySonicTotal;
 
     public ThermallyPerfectGas(Fuel fuel)
     {
@@ -55,32 +55,34 @@ public sealed class ThermallyPerfectGas : GasModel
             Add(products, "CO2", range, carbon);
             Add(products, "H2O", range, hydrogen / 2.0);
             Add(products, "O2", range, -(carbon + hydrogen / 4.0));
-            for (var k = 0; k < 7; k++)
-                _cp[7 * range + k] = Vector256.Create(air[k], water[k], products[k], 0.0);
-            _b1[range] = Vector256.Create(air[7], water[7], products[7], 0.0);
-            _b2[range] = Vector256.Create(air[8], water[8], products[8], 0.0);
+            SetTerms(range, 0, air);
+            SetTerms(range, 1, water);
+            SetTerms(range, 2, products);
         }
 
-        Lines(Join, 0, out var below);
-        Lines(Join, 1, out var above);
-        _b1[1] += below.H - above.H;
-        _b2[1] += below.Phi - above.Phi;
+        for (var line = 0; line < 3; line++)
+        {
+            var step = Line(Join, 0, line) - Line(Join, 1, line);
+            _terms[Index(1, line)] += Vector256.Create(step[0], step[1], 0.0, 0.0);
+        }
 
         RAir = NasaGlennData.GasConstant / airMass;
         RWater = R("H2O");
         RFuelLine = NasaGlennData.GasConstant * (carbon + hydrogen / 2.0 - (carbon + hydrogen / 4.0));
         HeatingValue = fuel.LowerHeatingValue;
 
-        Lines(Reference, 0, out var reference);
-        for (var lane = 0; lane < 3; lane++)
+        for (var line = 0; line < 3; line++)
         {
-            _hReference[lane] = reference.H[lane];
-            _phiReference[lane] = reference.Phi[lane];
+            var reference = Line(Reference, 0, line);
+            _hReference[line] = reference[0];
+            _phiReference[line] = reference[1];
         }
+
         _fuelEnthalpy = _hReference[2] + HeatingValue;
 
         _byEnthalpy = new StartTable(this, (in GasPoint p, double y, double q) => p.H - EnthalpyDatum(y, q));
         _byEntropy = new StartTable(this, (in GasPoint p, double y, double q) => p.Phi - EntropyDatum(y, q));
+        _bySonicTotal = new StartTable(this, TotalOfSonic);
     }
 
     public Fuel Fuel { get; }
@@ -103,8 +105,8 @@ public sealed class ThermallyPerfectGas : GasModel
     public override void AtTemperature(double t, double y, double q, out GasPoint point)
     {
         var inside = Math.Clamp(t, LowestTemperature, HighestTemperature);
-        Lines(inside, inside < Join ? 0 : 1, out var lines);
-        Blend(inside, lines, y, q, out point);
+        Lines(inside, out var air, out var water, out var fuel);
+        Blend(inside, air, water, fuel, y, q, out point);
         if (inside != t)
             Extend(t - inside, ref point);
     }
@@ -113,56 +115,48 @@ public sealed class ThermallyPerfectGas : GasModel
     public override void AtEnthalpy(double h, double y, double q, out GasPoint point)
     {
         var t = _byEnthalpy.Start(h - EnthalpyDatum(y, q), y, q);
-        var weights = Weights(y, q);
-        for (var i = 0; i < 8; i++)
+        for (var i = 0; ; i++)
         {
-            Lines(t, t < Join ? 0 : 1, out var lines);
-            var cp = Vector256.Dot(lines.Cp, weights);
-            var cpT = Vector256.Dot(lines.CpT, weights);
-            var newton = (h - Vector256.Dot(lines.H, weights)) / cp;
-            var step = newton / (1.0 + 0.5 * newton * cpT / cp);
-            var next = Math.Clamp(t + step, LowestTemperature, HighestTemperature);
-            var done = Math.Abs(next - t) < StepForRoundOff * t;
-            t = next;
-            if (done)
-                break;
-        }
+            Lines(t, out var air, out var water, out var fuel);
+            Blend(t, air, water, fuel, y, q, out point);
+            var newton = (h - point.H) / point.Cp;
+            var step = newton / (1.0 + 0.5 * newton * point.CpT / point.Cp);
+            var next = t + step;
+            if (Math.Abs(step) < LastStep * t || i == MostSteps || next is < LowestTemperature or > HighestTemperature)
+            {
+                Move(ref point, i < MostSteps ? step : newton);
+                point.H = h;
+                return;
+            }
 
-        Lines(t, t < Join ? 0 : 1, out var last);
-        Blend(t, last, y, q, out point);
-        // What the last step left: of the order of the cube of that step, so a first-order correction is exact to rounding.
-        var rest = (h - point.H) / point.Cp;
-        point.T += rest;
-        point.Phi += point.Cp * rest / t;
-        point.H = h;
+            t = next;
+        }
     }
 
     [MethodImpl(MethodImplOptions.NoInlining | MethodImplOptions.AggressiveOptimization)]
     public override void AtEntropy(double phi, double y, double q, out GasPoint point)
     {
         var t = _byEntropy.Start(phi - EntropyDatum(y, q), y, q);
-        var weights = Weights(y, q);
-        for (var i = 0; i < 8; i++)
+        for (var i = 0; ; i++)
         {
-            Lines(t, t < Join ? 0 : 1, out var lines);
-            var cp = Vector256.Dot(lines.Cp, weights);
-            var cpT = Vector256.Dot(lines.CpT, weights);
-            var newton = (phi - Vector256.Dot(lines.Phi, weights)) * t / cp;
-            var step = newton / (1.0 + 0.5 * newton * (cpT / cp - 1.0 / t));
-            var next = Math.Clamp(t + step, LowestTemperature, HighestTemperature);
-            var done = Math.Abs(next - t) < StepForRoundOff * t;
-            t = next;
-            if (done)
-                break;
-        }
+            Lines(t, out var air, out var water, out var fuel);
+            Blend(t, air, water, fuel, y, q, out point);
+            var newton = (phi - point.Phi) * t / point.Cp;
+            var step = newton / (1.0 + 0.5 * newton * (point.CpT / point.Cp - 1.0 / t));
+            var next = t + step;
+            if (Math.Abs(step) < LastStep * t || i == MostSteps || next is < LowestTemperature or > HighestTemperature)
+            {
+                Move(ref point, i < MostSteps ? step : newton);
+                point.Phi = phi;
+                return;
+            }
 
-        Lines(t, t < Join ? 0 : 1, out var last);
-        Blend(t, last, y, q, out point);
-        var rest = (phi - point.Phi) * t / point.Cp;
-        point.T += rest;
-        point.H += point.Cp * rest;
-        point.Phi = phi;
+            t = next;
+        }
     }
+
+    public override double SonicStart(double totalTemperature, double y, double q) =>
+        _bySonicTotal.Start(totalTemperature, y, q);
 
     public override double FuelForTemperature(
         double t3,
@@ -187,6 +181,9 @@ public sealed class ThermallyPerfectGas : GasModel
         return f;
     }
 
+    public override double FuelEnthalpyFlow(double fuelFlow, double efficiency) =>
+        fuelFlow * (_fuelEnthalpy - (1.0 - efficiency) * HeatingValue);
+
     public override double BurntFraction(double fuelAirRatio, out double slope)
     {
         var whole = 1.0 / (1.0 + fuelAirRatio);
@@ -196,8 +193,10 @@ public sealed class ThermallyPerfectGas : GasModel
 
     public override double FuelAirRatioOf(double y) => y / (1.0 - y);
 
-    // After a step this small (relative) Halley's cubic convergence leaves less than 1e-12; the closing correction takes that.
-    private const double StepForRoundOff = 1e-4;
+    // After a step this small (relative) Halley's cubic convergence leaves less than 1e-13, and the second-order expansion
+    // over that step is as good.
+    private const double LastStep = 3e-5;
+    private const int MostSteps = 8;
 
     private static void Add(Span<double> line, string species, int range, double molesPerKilogram)
     {
@@ -212,10 +211,6 @@ public sealed class ThermallyPerfectGas : GasModel
     private double EntropyDatum(double y, double q) =>
         (1.0 - y) * ((1.0 - q) * _phiReference[0] + q * _phiReference[1]) + y * _phiReference[2];
 
-    [MethodImpl(MethodImplOptions.AggressiveInlining)]
-    private static Vector256<double> Weights(double y, double q) =>
-        Vector256.Create((1.0 - y) * (1.0 - q), (1.0 - y) * q, y, 0.0);
-
     private static void Extend(double beyond, ref GasPoint p)
     {
         p.T += beyond;
@@ -224,61 +219,104 @@ public sealed class ThermallyPerfectGas : GasModel
         p.CpT = 0.0;
     }
 
-    private struct PropertyLines
+    /// <summary>Carries a point over a small step of temperature by its own derivatives.</summary>
+    [MethodImpl(MethodImplOptions.AggressiveInlining)]
+    private static void Move(ref GasPoint p, double d)
     {
-        public Vector256<double> Cp,
-            CpT,
-            H,
-            Phi;
+        var r = d / p.T;
+        p.H += d * (p.Cp + 0.5 * d * p.CpT);
+        p.Phi += r * (p.Cp * (1.0 - 0.5 * r) + 0.5 * d * p.CpT);
+        p.Hy += d * p.Cpy;
+        p.Hq += d * p.Cpq;
+        p.Phiy += r * p.Cpy;
+        p.Phiq += r * p.Cpq;
+        p.Cp += d * p.CpT;
+        p.Cpy += d * p.CpTy;
+        p.Cpq += d * p.CpTq;
+        p.T += d;
+    }
+
+    private double TotalOfSonic(in GasPoint p, double y, double q)
+    {
+        var r = GasConstant(y, q);
+        AtEnthalpy(p.H + 0.5 * p.Cp / (p.Cp - r) * r * p.T, y, q, out var total);
+        return total.T;
+    }
+
+    private static int Index(int range, int line) => (3 * range + line) * Terms;
+
+    // Order: 1, T, T2, T3, T4, T5, 1/T, 1/T2, 1/T3, ln T.
+    private void SetTerms(int range, int line, double[] a)
+    {
+        static Vector256<double> V(double h, double phi, double cp, double cpT) => Vector256.Create(h, phi, cp, cpT);
+        var at = Index(range, line);
+        _terms[at] = V(a[7], a[8], a[2], a[3]);
+        _terms[at + 1] = V(a[2], a[3], a[3], 2.0 * a[4]);
+        _terms[at + 2] = V(a[3] / 2.0, a[4] / 2.0, a[4], 3.0 * a[5]);
+        _terms[at + 3] = V(a[4] / 3.0, a[5] / 3.0, a[5], 4.0 * a[6]);
+        _terms[at + 4] = V(a[5] / 4.0, a[6] / 4.0, a[6], 0.0);
+        _terms[at + 5] = V(a[6] / 5.0, 0.0, 0.0, 0.0);
+        _terms[at + 6] = V(-a[0], -a[1], a[1], 0.0);
+        _terms[at + 7] = V(0.0, -a[0] / 2.0, a[0], -a[1]);
+        _terms[at + 8] = V(0.0, 0.0, 0.0, -2.0 * a[0]);
+        _terms[at + 9] = V(a[1], a[2], 0.0, 0.0);
+    }
+
+    private Vector256<double> Line(double t, int range, int line)
+    {
+        var r = 1.0 / t;
+        return OneLine(ref _terms[Index(range, line)], t, r, Math.Log(t));
     }
 
     /// <summary>The four temperature functions of all three lines.</summary>
     [MethodImpl(MethodImplOptions.AggressiveInlining)]
-    private void Lines(double t, int range, out PropertyLines lines)
+    private void Lines(
+        double t,
+        out Vector256<double> air,
+        out Vector256<double> water,
+        out Vector256<double> fuel
+    )
     {
-        ref var a = ref _cp[7 * range];
+        ref var terms = ref _terms[t < Join ? 0 : 3 * Terms];
         var r = 1.0 / t;
-        var tv = Vector256.Create(t);
-        var rv = Vector256.Create(r);
-        var log = Vector256.Create(Math.Log(t));
-        var a1 = a;
-        var a2 = Unsafe.Add(ref a, 1);
-        var a3 = Unsafe.Add(ref a, 2);
-        var a4 = Unsafe.Add(ref a, 3);
-        var a5 = Unsafe.Add(ref a, 4);
-        var a6 = Unsafe.Add(ref a, 5);
-        var a7 = Unsafe.Add(ref a, 6);
-
-        var low = MulAdd(a1, rv, a2); // a1/T + a2
-        lines.Cp = MulAdd(low, rv, MulAdd(tv, MulAdd(tv, MulAdd(tv, MulAdd(tv, a7, a6), a5), a4), a3));
-        lines.CpT = MulAdd(
-            Vector256.Create(-r * r),
-            MulAdd(a1 + a1, rv, a2),
-            MulAdd(tv, MulAdd(tv, MulAdd(tv, 4.0 * a7, 3.0 * a6), 2.0 * a5), a4)
-        );
-        var h = MulAdd(tv, MulAdd(tv, MulAdd(tv, MulAdd(tv, 0.2 * a7, 0.25 * a6), a5 * (1.0 / 3.0)), 0.5 * a4), a3);
-        lines.H = MulAdd(tv, h, MulAdd(a2, log, _b1[range] - a1 * rv));
-        var s = MulAdd(tv, MulAdd(tv, MulAdd(tv, 0.25 * a7, a6 * (1.0 / 3.0)), 0.5 * a5), a4);
-        lines.Phi = MulAdd(tv, s, MulAdd(a3, log, _b2[range] - rv * MulAdd(0.5 * a1, rv, a2)));
+        var log = Math.Log(t);
+        air = OneLine(ref terms, t, r, log);
+        water = OneLine(ref Unsafe.Add(ref terms, Terms), t, r, log);
+        fuel = OneLine(ref Unsafe.Add(ref terms, 2 * Terms), t, r, log);
     }
 
     [MethodImpl(MethodImplOptions.AggressiveInlining)]
-    private static void Blend(double t, in PropertyLines lines, double y, double q, out GasPoint p)
+    private static Vector256<double> OneLine(ref Vector256<double> c, double t, double r, double log)
     {
-        var weights = Weights(y, q);
-        var perY = Vector256.Create(q - 1.0, -q, 1.0, 0.0);
-        var perQ = Vector256.Create(y - 1.0, 1.0 - y, 0.0, 0.0);
-        p.T = t;
-        p.H = Vector256.Dot(lines.H, weights);
-        p.Phi = Vector256.Dot(lines.Phi, weights);
-        p.Cp = Vector256.Dot(lines.Cp, weights);
-        p.CpT = Vector256.Dot(lines.CpT, weights);
-        p.Hy = Vector256.Dot(lines.H, perY);
-        p.Phiy = Vector256.Dot(lines.Phi, perY);
-        p.Cpy = Vector256.Dot(lines.Cp, perY);
-        p.Hq = Vector256.Dot(lines.H, perQ);
-        p.Phiq = Vector256.Dot(lines.Phi, perQ);
-        p.Cpq = Vector256.Dot(lines.Cp, perQ);
+        var tv = Vector256.Create(t);
+        var rv = Vector256.Create(r);
+        var rising = MulAdd(tv, MulAdd(tv, Unsafe.Add(ref c, 5), Unsafe.Add(ref c, 4)), Unsafe.Add(ref c, 3));
+        rising = MulAdd(tv, MulAdd(tv, MulAdd(tv, rising, Unsafe.Add(ref c, 2)), Unsafe.Add(ref c, 1)), c);
+        var falling = MulAdd(rv, MulAdd(rv, Unsafe.Add(ref c, 8), Unsafe.Add(ref c, 7)), Unsafe.Add(ref c, 6));
+        return MulAdd(Vector256.Create(log), Unsafe.Add(ref c, 9), MulAdd(rv, falling, rising));
+    }
+
+    [MethodImpl(MethodImplOptions.AggressiveInlining)]
+    private static void Blend(
+        double t,
+        Vector256<double> air,
+        Vector256<double> water,
+        Vector256<double> fuel,
+        double y,
+        double q,
+        out GasPoint p
+    )
+    {
+        var perQ = water - air;
+        var moist = MulAdd(Vector256.Create(q), perQ, air);
+        var perY = fuel - moist;
+        GasPoint.Fill(
+            out p,
+            t,
+            MulAdd(Vector256.Create(y), perY, moist),
+            perY,
+            perQ * Vector256.Create(1.0 - y)
+        );
     }
 
     [MethodImpl(MethodImplOptions.AggressiveInlining)]
@@ -290,12 +328,12 @@ public sealed class ThermallyPerfectGas : GasModel
     private delegate double Ordinate(in GasPoint point, double y, double q);
 
     /// <summary>
-    /// Cubic Hermite table of temperature over a shifted property of dry air, with the change that a little water or fuel
-    /// makes. Good to about 1e-4, which one Halley step turns into rounding error.
+    /// Cubic Hermite table of temperature over a shifted property: lanes are dry air, the change per unit of q, and the
+    /// first and second differences over y. Good to about 1e-5, which one Halley step turns into rounding error.
     /// </summary>
     private sealed class StartTable
     {
-        private const double SampleY = 0.03,
+        private const double SampleY = 0.02,
             SampleQ = 0.02;
 
         private readonly double _first,
@@ -314,11 +352,19 @@ public sealed class ThermallyPerfectGas : GasModel
                 var x = _first + i * width;
                 var (t0, s0) = Invert(gas, ordinate, x, 0.0, 0.0);
                 var (tq, sq) = Invert(gas, ordinate, x, 0.0, SampleQ);
-                var (ty, sy) = Invert(gas, ordinate, x, SampleY, 0.0);
-                _nodes[2 * i] = Vector256.Create(t0, (tq - t0) / SampleQ, (ty - t0) / SampleY, 0.0);
-                _nodes[2 * i + 1] =
-                    width * Vector256.Create(s0, (sq - s0) / SampleQ, (sy - s0) / SampleY, 0.0);
+                var (t1, s1) = Invert(gas, ordinate, x, SampleY, 0.0);
+                var (t2, s2) = Invert(gas, ordinate, x, 2.0 * SampleY, 0.0);
+                _nodes[2 * i] = Lanes(t0, tq, t1, t2);
+                _nodes[2 * i + 1] = width * Lanes(s0, sq, s1, s2);
             }
+
+            static Vector256<double> Lanes(double at0, double atQ, double atY, double atTwoY) =>
+                Vector256.Create(
+                    at0,
+                    (atQ - at0) / SampleQ,
+                    (4.0 * atY - 3.0 * at0 - atTwoY) / (2.0 * SampleY),
+                    (atTwoY - 2.0 * atY + at0) / (2.0 * SampleY * SampleY)
+                );
         }
 
         [MethodImpl(MethodImplOptions.AggressiveInlining)]
@@ -338,7 +384,7 @@ public sealed class ThermallyPerfectGas : GasModel
             var c3 = m0 + m1 - 2.0 * d;
             var uv = Vector256.Create(u);
             var value = MulAdd(uv, MulAdd(uv, MulAdd(uv, c3, c2), m0), p0);
-            var t = Vector256.Dot(value, Vector256.Create(1.0, q, y, 0.0));
+            var t = Vector256.Dot(value, Vector256.Create(1.0, q, y, y * y));
             return Math.Clamp(t, LowestTemperature, HighestTemperature);
         }
 

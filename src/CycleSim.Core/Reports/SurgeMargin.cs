@@ -1,0 +1,39 @@
+using CycleSim.Engine;
+
+namespace CycleSim.Reports;
+
+/// <summary>Distance of a working point from the surge line of its compressor's map, both common definitions.</summary>
+public static class SurgeMargin
+{
+    /// <summary>
+    /// Margins as ratios: at constant corrected flow, PRs/PR - 1 (usage of SAE ARP1420); at constant corrected speed,
+    /// (PRs/Ws)/(PR/W) - 1 (usage of NASA stage reports). NaN where the surge line is not on the map.
+    /// </summary>
+    public static (double ConstantFlow, double ConstantSpeed) Of(ScaledCompressor compressor, double speed, double beta)
+    {
+        var (flow, ratio) = Point(compressor, speed, beta);
+        var (surgeFlow, surgeRatio) = Point(compressor, speed, 1.0);
+        var constantSpeed = surgeRatio / surgeFlow / (ratio / flow) - 1.0;
+
+        double low = compressor.Map.LowestSpeed,
+            high = compressor.Map.HighestSpeed;
+        if (Point(compressor, low, 1.0).Flow > flow || Point(compressor, high, 1.0).Flow < flow)
+            return (double.NaN, constantSpeed);
+        for (var i = 0; i < 60; i++)
+        {
+            var middle = 0.5 * (low + high);
+            if (Point(compressor, middle, 1.0).Flow < flow)
+                low = middle;
+            else
+                high = middle;
+        }
+
+        return (Point(compressor, low, 1.0).Ratio / ratio - 1.0, constantSpeed);
+    }
+
+    private static (double Flow, double Ratio) Point(ScaledCompressor compressor, double speed, double beta)
+    {
+        compressor.Map.Read(speed, beta, out var m);
+        return (compressor.FlowScale * m.Value[0], 1.0 + compressor.RiseScale * m.Value[1]);
+    }
+}
