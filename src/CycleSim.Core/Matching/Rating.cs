@@ -152,7 +152,7 @@ public sealed class Rating
         InputLayout.SetFlight(_matcher.Inputs, FlightCondition.AtIsaOffset(0.0, 0.0, 15.0));
         var outcome = Break(_matcher.Inputs.ToArray(), thrust, out var temperature, out _);
         return outcome.Solved
-            ? temperature - 288.15
+            ? temperature - StandardAtmosphere.SeaLevelTemperature
             : throw new RatingException(
                 $"rating '{Definition.Name}': no outside temperature makes the limits meet {thrust / 1000.0:F1} kN static at "
                     + $"sea level: {Diagnosis.Of(_engine, _matcher, outcome)}"

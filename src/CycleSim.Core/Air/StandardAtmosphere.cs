@@ -1,0 +1,118 @@
+namespace CycleSim.Air;
+
+/// <summary>
+/// The international standard atmosphere of ISO 2533:1975 over pressure altitude (geopotential), -2 000 to 32 000 m.
+/// </summary>
+public static class StandardAtmosphere
+{
+    public const double LowestAltitude = -2000.0,
+        HighestAltitude = 32000.0;
+
+    /// <summary>Sea level: K, Pa, kg/m3.</summary>
+    public const double SeaLevelTemperature = 288.15,
+        SeaLevelPressure = 101325.0,
+        SeaLevelDensity = 1.225;
+
+    /// <summary>Standard acceleration of free fall, m/s2.</summary>
+    public const double Gravity = 9.80665;
+
+    /// <summary>The standard's own gas constant, J/(kmol K), and molar mass of air, kg/kmol; ratio of specific heats.</summary>
+    public const double MolarGasConstant = 8314.32,
+        MolarMass = 28.964420,
+        Gamma = 1.4;
+
+    /// <summary>Gas constant of air in the standard, J/(kg K).</summary>
+    public const double GasConstant = MolarGasConstant / MolarMass;
+
+    // Base altitude (m), temperature (K), gradient (K/m); the lowest layer is used below sea level too.
+    private static readonly (double Altitude, double Temperature, double Gradient)[] Layers =
+    [
+        (0.0, 288.15, -0.0065),
+        (11000.0, 216.65, 0.0),
+        (20000.0, 216.65, 0.001),
+    ];
+
+    private static readonly double[] BasePressures = PressuresAtBases();
+
+    /// <summary>Temperature, K.</summary>
+    /// <exception cref="ArgumentOutOfRangeException">Altitude outside the range.</exception>
+    public static double Temperature(double pressureAltitude)
+    {
+        var layer = Layers[LayerOf(Checked(pressureAltitude))];
+        return layer.Temperature + layer.Gradient * (pressureAltitude - layer.Altitude);
+    }
+
+    /// <summary>Pressure, Pa.</summary>
+    /// <exception cref="ArgumentOutOfRangeException">Altitude outside the range.</exception>
+    public static double Pressure(double pressureAltitude)
+    {
+        var k = LayerOf(Checked(pressureAltitude));
+        return BasePressures[k] * PressureRatio(Layers[k], pressureAltitude);
+    }
+
+    /// <summary>Density, kg/m3.</summary>
+    public static double Density(double pressureAltitude) =>
+        Pressure(pressureAltitude) / (GasConstant * Temperature(pressureAltitude));
+
+    /// <summary>Speed of sound, m/s.</summary>
+    public static double SpeedOfSound(double pressureAltitude) =>
+        Math.Sqrt(Gamma * GasConstant * Temperature(pressureAltitude));
+
+    /// <summary>Dynamic viscosity of air at a temperature (K), Pa s, by the standard's form of Sutherland's law.</summary>
+    public static double Viscosity(double temperature) =>
+        1.458e-6 * temperature * Math.Sqrt(temperature) / (temperature + 110.4);
+
+    /// <summary>Pressure altitude (m) at which the standard has this pressure (Pa).</summary>
+    /// <exception cref="ArgumentOutOfRangeException">The pressure belongs to no altitude in the range.</exception>
+    public static double PressureAltitude(double pressure)
+    {
+        if (!(pressure <= Pressure(LowestAltitude)) || !(pressure >= Pressure(HighestAltitude)))
+            throw new ArgumentOutOfRangeException(
+                nameof(pressure),
+                $"A static pressure of {pressure:F0} Pa lies outside {Pressure(HighestAltitude):F0} to "
+                    + $"{Pressure(LowestAltitude):F0} Pa, the range of the standard atmosphere used here."
+            );
+        var k = Layers.Length - 1;
+        while (k > 0 && pressure > BasePressures[k])
+            k--;
+        var (altitude, temperature, gradient) = Layers[k];
+        var log = Math.Log(pressure / BasePressures[k]);
+        return gradient == 0.0
+            ? altitude - log * GasConstant * temperature / Gravity
+            : altitude + temperature / gradient * (Math.Exp(-log * GasConstant * gradient / Gravity) - 1.0);
+    }
+
+    private static double[] PressuresAtBases()
+    {
+        var pressures = new double[Layers.Length];
+        pressures[0] = SeaLevelPressure;
+        for (var k = 1; k < Layers.Length; k++)
+            pressures[k] = pressures[k - 1] * PressureRatio(Layers[k - 1], Layers[k].Altitude);
+        return pressures;
+    }
+
+    private static double PressureRatio((double Altitude, double Temperature, double Gradient) layer, double altitude)
+    {
+        var above = altitude - layer.Altitude;
+        return layer.Gradient == 0.0
+            ? Math.Exp(-Gravity * above / (GasConstant * layer.Temperature))
+            : Math.Pow(1.0 + layer.Gradient * above / layer.Temperature, -Gravity / (GasConstant * layer.Gradient));
+    }
+
+    private static int LayerOf(double altitude)
+    {
+        var k = Layers.Length - 1;
+        while (k > 0 && altitude < Layers[k].Altitude)
+            k--;
+        return k;
+    }
+
+    private static double Checked(double altitude) =>
+        altitude is >= LowestAltitude and <= HighestAltitude
+            ? altitude
+            : throw new ArgumentOutOfRangeException(
+                nameof(altitude),
+                $"A pressure altitude of {altitude:F0} m ({altitude / 0.3048:F0} ft) lies outside {LowestAltitude:F0} to "
+                    + $"{HighestAltitude:F0} m, the range of the standard atmosphere used here."
+            );
+}
