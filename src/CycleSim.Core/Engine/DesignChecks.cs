@@ -34,26 +34,27 @@ internal static class DesignChecks
             );
     }
 
-    public static void Check(EngineDefinition definition, FlowPath<Plain> path)
+    public static void CheckCombustor(EngineDefinition definition, double airFlow, double t3, double t4, double fuelFlow)
     {
-        var t3 = path.CombustorInlet.Tt.Value;
-        var t4 = path.CombustorExit.Tt.Value;
-        if (!(path.CombustorInlet.W.Value > 0.0))
+        if (!(airFlow > 0.0))
             throw new SizingException(
                 $"{definition.Name}: no air reaches the combustor; the [[air]] flows take all of it. Reduce them."
             );
-        if (!(t4 > t3) || !(path.FuelFlow.Value > 0.0))
+        if (!(t4 > t3) || !(fuelFlow > 0.0))
             throw new SizingException(
                 $"{definition.Name}: combustor exit temperature T4 = {t4:F0} K is not above the compressor delivery "
                     + $"temperature T3 = {t3:F0} K. Raise T4 or lower the pressure ratios."
             );
         var stoichiometric = definition.Gas.StoichiometricFuelAirRatio;
-        var far = path.FuelFlow.Value / path.CombustorInlet.W.Value;
-        if (far > stoichiometric)
+        if (fuelFlow / airFlow > stoichiometric)
             throw new SizingException(
-                $"{definition.Name}: T4 = {t4:F0} K needs a fuel-air ratio of {far:F4}, above the stoichiometric "
-                    + $"{stoichiometric:F4}. Lower T4."
+                $"{definition.Name}: T4 = {t4:F0} K needs a fuel-air ratio of {fuelFlow / airFlow:F4}, above the "
+                    + $"stoichiometric {stoichiometric:F4}. Lower T4."
             );
+    }
+
+    public static void CheckNozzles(EngineDefinition definition, FlowPath<Plain> path)
+    {
         var ambient = path.Inputs[InputLayout.Pressure].Value;
         CheckNozzle(definition, "core", path.CoreExit.P.Value, ambient);
         if (definition.Fan is not null)

@@ -301,6 +301,14 @@ public sealed class FlowPath<T>
         var pressureRatio = Duct.PressureRatio(combustor.PressureLoss, correctedFlow / _engine.CombustorFlow);
         var t4 = Unknowns[^1] * 1000.0;
         Combustor.Burn(gas, CombustorInlet, t4, pressureRatio, combustor.Efficiency, out CombustorExit, out FuelFlow);
+        if (_sizing)
+            DesignChecks.CheckCombustor(
+                _engine.Definition,
+                CombustorInlet.W.Value,
+                CombustorInlet.Tt.Value,
+                t4.Value,
+                FuelFlow.Value
+            );
     }
 
     private void RunTurbine(in GasRelations<T> gas, int k)

@@ -82,7 +82,7 @@ public static class Sizing
         for (var i = 0; i < unknowns.Length; i++)
             path.Unknowns[i] = new Plain(unknowns[i]);
         path.Evaluate();
-        DesignChecks.Check(definition, path);
+        DesignChecks.CheckNozzles(definition, path);
 
         engine.DesignUnknowns = unknowns;
         engine.DesignThrust = path.NetThrust.Value;

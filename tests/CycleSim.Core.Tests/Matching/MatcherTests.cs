@@ -1,0 +1,168 @@
+using CycleSim.Air;
+using CycleSim.Engine;
+using CycleSim.Matching;
+using CycleSim.Reports;
+using CycleSim.Tests.Engine;
+
+namespace CycleSim.Tests.Matching;
+
+public class MatcherTests
+{
+    private static readonly SizedEngine Twin = Sizing.Size(TestEngines.TwinSpool());
+
+    // -1 000 to 43 000 ft, Mach 0 to 0.88 within the corridor of a transport (350 kt calibrated, Mach 0.88), ISA -35 to +35,
+    // 10 to 100 % of the rating, with customer bleed and power offtake now and then.
+    [Fact]
+    public void Twenty_thousand_feasible_points_all_converge()
+    {
+        var rating = new Rating(Twin, Twin.Definition.Ratings[0]);
+        var matcher = new Matcher(Twin);
+        var random = new Random(20261201);
+        var failures = new List<string>();
+        long iterations = 0;
+        const int Points = 20000;
+        for (var i = 0; i < Points; i++)
+        {
+            var altitude = (-1000.0 + 44000.0 * random.NextDouble()) * 0.3048;
+            var pressure = StandardAtmosphere.Pressure(altitude);
+            var fastest = Math.Min(0.88, Airspeed.MachFromCalibrated(350.0 * 1852.0 / 3600.0, pressure));
+            var mach = fastest * random.NextDouble();
+            if (altitude > 6000.0 && mach < 0.3)
+                mach = 0.3 + (fastest - 0.3) * random.NextDouble();
+            var flight = FlightCondition.AtIsaOffset(altitude, mach, -35.0 + 70.0 * random.NextDouble());
+            var inputs = Twin.Layout.Defaults(Twin.Definition, flight);
+            if (i % 3 == 0)
+            {
+                inputs[Twin.Layout.PortFraction(3)] = 0.05 * random.NextDouble();
+                inputs[Twin.Layout.PowerOfftake(1)] = 200e3 * random.NextDouble();
+            }
+
+            var flat = rating.FlatThrust(altitude, mach);
+            var full = rating.Solve(inputs, flat, out _);
+            Assert.True(full.Solved, $"rating at {altitude:F0} m, Mach {mach:F2}: {full.Status}");
+            var wanted = rating.Matcher.Path.NetThrust.Value * (0.1 + 0.9 * random.NextDouble());
+            inputs.CopyTo(matcher.Inputs, 0);
+            var outcome = matcher.Solve(MatchingProblem.For(Quantity.NetThrust, wanted));
+            iterations += outcome.Iterations;
+            if (!outcome.Solved || !(outcome.Residual <= 1e-10))
+                failures.Add(
+                    $"{altitude:F0} m, Mach {mach:F3}, {flight.IsaOffset:F1} K, {wanted:F0} N: "
+                        + Diagnosis.Of(Twin, matcher, outcome)
+                );
+        }
+
+        Assert.True(failures.Count == 0, $"{failures.Count} failed:\n" + string.Join("\n", failures.Take(10)));
+        Assert.InRange((double)iterations / Points, 0.0, 8.0);
+    }
+
+    public static TheoryData<Quantity> Settings =>
+        [
+            Quantity.NetThrust,
+            Quantity.FuelFlow,
+            Quantity.T4,
+            Quantity.T41,
+            Quantity.T45,
+            Quantity.T5,
+            Quantity.N1,
+            Quantity.N2,
+            Quantity.Epr,
+            Quantity.P3,
+            Quantity.T3,
+            Quantity.CorrectedN1,
+            Quantity.Lever,
+        ];
+
+    [Theory]
+    [MemberData(nameof(Settings))]
+    public void Any_output_can_set_the_power(Quantity quantity)
+    {
+        var matcher = new Matcher(Twin);
+        InputLayout.SetFlight(matcher.Inputs, FlightCondition.AtIsaOffset(2000.0, 0.3, 10.0));
+        Assert.True(matcher.Solve(MatchingProblem.For(Quantity.T4, 1500.0)).Solved);
+        var thrust = matcher.Path.NetThrust.Value;
+        var value = matcher.Path.Output(quantity).Value;
+        Assert.True(matcher.Solve(MatchingProblem.For(quantity, value)).Solved);
+        Assert.Equal(1.0, matcher.Path.NetThrust.Value / thrust, 1e-8);
+    }
+
+    [Fact]
+    public void A_solution_allocates_nothing()
+    {
+        var matcher = new Matcher(Twin);
+        var problem = MatchingProblem.For(Quantity.NetThrust, 60e3);
+        InputLayout.SetFlight(matcher.Inputs, FlightCondition.AtIsaOffset(1000.0, 0.2, 0.0));
+        Assert.True(matcher.Solve(problem).Solved);
+        var before = GC.GetAllocatedBytesForCurrentThread();
+        for (var i = 0; i < 100; i++)
+            matcher.Solve(problem);
+        Assert.Equal(0, GC.GetAllocatedBytesForCurrentThread() - before);
+    }
+
+    [Fact]
+    public void The_same_point_has_the_same_bits_in_any_order()
+    {
+        var matcher = new Matcher(Twin);
+        double Thrust(double t4)
+        {
+            InputLayout.SetFlight(matcher.Inputs, FlightCondition.AtIsaOffset(5000.0, 0.5, 0.0));
+            Assert.True(matcher.Solve(MatchingProblem.For(Quantity.T4, t4)).Solved);
+            return matcher.Path.NetThrust.Value;
+        }
+
+        var first = Thrust(1400.0);
+        Thrust(1100.0);
+        Thrust(1600.0);
+        Assert.Equal(first, Thrust(1400.0));
+    }
+
+    [Fact]
+    public void Thrust_beyond_the_engine_is_refused_with_the_reason()
+    {
+        var engine = new EngineModel(Twin);
+        var error = Assert.Throws<NoSolutionException>(() =>
+            engine.At(FlightCondition.AtIsaOffset(0.0, 0.0, 15.0), Quantity.NetThrust, 400e3)
+        );
+        Assert.Contains("net thrust = 400.00 kN cannot be reached", error.Message);
+        Assert.Contains("of its map", error.Message);
+    }
+
+    [Theory]
+    [InlineData(Quantity.NetThrust, -5.0, "must be above zero")]
+    [InlineData(Quantity.T4, double.NaN, "must be above zero")]
+    [InlineData(Quantity.N3, 1.0, "has no spool for N3")]
+    public void A_setting_that_means_nothing_is_refused(Quantity quantity, double value, string message)
+    {
+        var error = Assert.Throws<NoSolutionException>(() =>
+            new EngineModel(Twin).At(FlightCondition.AtIsaOffset(0.0, 0.0, 0.0), quantity, value)
+        );
+        Assert.Contains(message, error.Message);
+    }
+
+    [Fact]
+    public void Freed_inputs_and_conditions_must_agree_in_number()
+    {
+        var error = Assert.Throws<ArgumentException>(() =>
+            MatchingProblem.Pose([new Limit(Quantity.T4, 1500.0)], [], [InputLayout.Mach])
+        );
+        Assert.Contains("1 freed inputs need 2 conditions", error.Message);
+    }
+
+    [Fact]
+    public void A_freed_bleed_meets_a_prescribed_pair_of_outputs()
+    {
+        var matcher = new Matcher(Twin);
+        InputLayout.SetFlight(matcher.Inputs, FlightCondition.AtIsaOffset(0.0, 0.0, 15.0));
+        var bleed = Twin.Layout.PortFraction(3);
+        matcher.Inputs[bleed] = 0.04;
+        Assert.True(matcher.Solve(MatchingProblem.For(Quantity.T41, 1600.0)).Solved);
+        var thrust = matcher.Path.NetThrust.Value;
+        matcher.Inputs[bleed] = 0.0;
+        var problem = MatchingProblem.Pose(
+            [new Limit(Quantity.T41, 1600.0), new Limit(Quantity.NetThrust, thrust)],
+            [],
+            [bleed]
+        );
+        Assert.True(matcher.Solve(problem).Solved);
+        Assert.Equal(0.04, matcher.Inputs[bleed], 1e-8);
+    }
+}
