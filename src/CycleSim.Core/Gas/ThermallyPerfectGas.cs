@@ -85,6 +85,11 @@ public sealed class ThermallyPerfectGas : GasModel
         _bySonicTotal = new StartTable(this, TotalOfSonic);
     }
 
+    private static readonly System.Collections.Concurrent.ConcurrentDictionary<Fuel, ThermallyPerfectGas> Known = new();
+
+    /// <summary>The gas of a fuel; made once, as its start tables take a few milliseconds.</summary>
+    public static ThermallyPerfectGas For(Fuel fuel) => Known.GetOrAdd(fuel, f => new ThermallyPerfectGas(f));
+
     public Fuel Fuel { get; }
 
     public override double RAir { get; }
