@@ -25,6 +25,7 @@ public enum Dimension
     RotationalSpeed,
     SpecificEnergy,
     SpecificHeat,
+    Speed,
 
     /// <summary>The dimension follows from another key of the same table.</summary>
     Dependent,
@@ -51,6 +52,7 @@ public static class Units
             Dimension.RotationalSpeed => "\"3800 rpm\"",
             Dimension.SpecificEnergy => "\"43.1 MJ/kg\"",
             Dimension.SpecificHeat => "\"1005 J/(kg K)\"",
+            Dimension.Speed => "\"250 kt\"",
             _ => "\"text\"",
         };
 
@@ -72,6 +74,7 @@ public static class Units
             Dimension.RotationalSpeed => "a rotational speed",
             Dimension.SpecificEnergy => "a specific energy",
             Dimension.SpecificHeat => "a specific heat",
+            Dimension.Speed => "a speed",
             _ => "a text",
         };
 
@@ -86,11 +89,12 @@ public static class Units
         Dimension.RotationalSpeed,
         Dimension.SpecificEnergy,
         Dimension.SpecificHeat,
+        Dimension.Speed,
         Dimension.Share,
     ];
 
     /// <summary>
-    /// Reads a text into SI (m, Pa, K, kg/s, N, W, 1/min for rotational speed, J/kg, J/(kg K), shares as ratios). On
+    /// Reads a text into SI (m, Pa, K, kg/s, N, W, m/s, 1/min for rotational speed, J/kg, J/(kg K), shares as ratios). On
     /// failure <paramref name="problem"/> says what was wrong and what was expected.
     /// </summary>
     public static bool TryRead(string text, Dimension dimension, out double value, out string problem)
@@ -144,6 +148,9 @@ public static class Units
                     && Set(speed.RevolutionsPerMinute, out value);
             case Dimension.SpecificEnergy:
                 return SpecificEnergy.TryParse(t, culture, out var energy) && Set(energy.JoulesPerKilogram, out value);
+            case Dimension.Speed:
+                return Speed.TryParse(t.EndsWith(" kt", StringComparison.Ordinal) ? t[..^1] + "n" : t, culture, out var v)
+                    && Set(v.MetersPerSecond, out value);
             case Dimension.SpecificHeat:
                 return t.EndsWith(" kJ/(kg K)", StringComparison.Ordinal) && Scaled(t[..^10], 1000.0, out value)
                     || t.EndsWith(" J/(kg K)", StringComparison.Ordinal) && Scaled(t[..^9], 1.0, out value);

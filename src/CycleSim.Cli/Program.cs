@@ -1,0 +1,64 @@
+using System.CommandLine;
+using CycleSim.Cli;
+using CycleSim.Definitions;
+using CycleSim.Engine;
+using CycleSim.Matching;
+using CycleSim.Reports;
+
+Console.OutputEncoding = new System.Text.UTF8Encoding(false);
+var root = new RootCommand(
+    """
+    Turbofan performance from a definition file: operating points, flat ratings.
+
+    Examples:
+      cyclesim engines
+      cyclesim point velda-27 --design
+      cyclesim point velda-27 --altitude "35000 ft" --mach 0.78 --isa "10 K" --rating max-climb
+      cyclesim flat-rating velda-27 --altitude "6000 ft" --units us
+      cyclesim point my-engine.toml --altitude "0 m" --mach 0 --thrust "100 kN" --json
+
+    Exit codes: 0 done, 2 command line not understood, 3 definition file refused, 4 no solution, 1 anything else.
+    Engineering study; not for dispatch, flight or maintenance.
+    """
+)
+{
+    EnginesCommand.Create(),
+    PointCommand.Create(),
+    FlatRatingCommand.Create(),
+};
+
+var parsed = root.Parse(args);
+if (parsed.Errors.Count > 0)
+{
+    foreach (var error in parsed.Errors)
+        Console.Error.WriteLine(error.Message);
+    Console.Error.WriteLine("'cyclesim --help' and 'cyclesim COMMAND --help' show what is understood.");
+    return ExitCode.Usage;
+}
+
+try
+{
+    return parsed.Invoke(new InvocationConfiguration { EnableDefaultExceptionHandler = false });
+}
+catch (UsageException error)
+{
+    return Fail(error, ExitCode.Usage);
+}
+catch (DefinitionException error)
+{
+    return Fail(error, ExitCode.Definition);
+}
+catch (Exception error) when (error is SizingException or RatingException)
+{
+    return Fail(error, ExitCode.Definition);
+}
+catch (NoSolutionException error)
+{
+    return Fail(error, ExitCode.NoSolution);
+}
+
+static int Fail(Exception error, int code)
+{
+    Console.Error.WriteLine(error.Message);
+    return code;
+}
