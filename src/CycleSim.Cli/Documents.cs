@@ -103,6 +103,7 @@ internal static class Documents
         o["T4_K"] = Number(p.T4);
         o["T41_K"] = Number(p.T41);
         o["T45_K"] = Number(p.T45);
+        o["dissociation_drop_of_T4_K"] = Number(p.DissociationDrop);
         o["lever_position"] = Number(p.LeverPosition);
         o["thermal_efficiency"] = Number(p.ThermalEfficiency);
         o["propulsive_efficiency"] = Number(p.PropulsiveEfficiency);

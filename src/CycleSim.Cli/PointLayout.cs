@@ -24,6 +24,7 @@ internal static class PointLayout
             ("bypass ratio", Display.Fixed(p.BypassRatio, 3)),
             ("pressure ratios", $"overall P3/P2 {Display.Fixed(p.OverallPressureRatio, 3)}, engine P5/P2 {Display.Fixed(p.EnginePressureRatio, 4)}"),
             ("temperatures", $"T4 {d.Temperature(p.T4)}, T41 {d.Temperature(p.T41)}, T45 {d.Temperature(p.T45)} {d.TemperatureUnit}"),
+            ("dissociation", DissociationNote(p, d)),
             ("lever", $"{Display.Percent(p.LeverPosition, 1)} %"),
             ("efficiencies", $"thermal {Display.Percent(p.ThermalEfficiency, 1)}, propulsive {Display.Percent(p.PropulsiveEfficiency, 1)}, overall {Display.Percent(p.OverallEfficiency, 1)} %")
         );
@@ -118,6 +119,11 @@ internal static class PointLayout
         Layout.Line($"Definition {loaded.Source}, SHA-256 {loaded.Hash[..16]}, cyclesim {Documents.Version}.");
         Layout.Line(Layout.Caution);
     }
+
+    private static string DissociationNote(OperatingPoint p, Display d) =>
+        double.IsNaN(p.DissociationDrop)
+            ? "not covered by the constant gas"
+            : $"combustion is taken as complete; in equilibrium T4 would be {Display.Fixed(p.DissociationDrop * (d.DifferenceUnit == "K" ? 1.0 : 1.8), 1)} {d.DifferenceUnit} lower at this fuel flow";
 
     public static string Setting(Limit setting, Display d) =>
         QuantityText.Name(setting.Quantity)

@@ -76,6 +76,14 @@ public sealed record OperatingPoint
     /// <summary>Gas temperature behind the first turbine, K (behind the only one: T5).</summary>
     public required double T45 { get; init; }
 
+    /// <summary>
+    /// How much lower (K) T4 would be at the same fuel flow if the products dissociated as in full equilibrium; the flow
+    /// path burns completely. NaN for the constant gas. Worked out when first asked for.
+    /// </summary>
+    public double DissociationDrop => Dissociation.Value;
+
+    internal Lazy<double> Dissociation { get; init; } = new(double.NaN);
+
     public StationReport Station(string number) =>
         Stations.FirstOrDefault(s => s.Number == number)
         ?? throw new KeyNotFoundException(

@@ -1,6 +1,7 @@
 using CycleSim.Air;
 using CycleSim.Components;
 using CycleSim.Engine;
+using CycleSim.Gas;
 using CycleSim.Maps;
 using CycleSim.Matching;
 using CycleSim.Scalars;
@@ -48,6 +49,7 @@ public sealed class PointReporter
             EnginePressureRatio = p.Output(Quantity.Epr).Value,
             LeverPosition = p.Output(Quantity.Lever).Value,
             T45 = p.Output(Quantity.T45).Value,
+            Dissociation = Dissociation(gas),
             Airspeed = airspeed,
             ThermalEfficiency = jetPower / fuelPower,
             PropulsiveEfficiency = p.NetThrust.Value * airspeed / jetPower,
@@ -60,6 +62,30 @@ public sealed class PointReporter
             Audit = PointAudit.Draw(_engine, _path, gas),
             Outcome = outcome,
         };
+    }
+
+    private Lazy<double> Dissociation(GasRelations<Plain> gas)
+    {
+        if (gas.Model is not ThermallyPerfectGas perfect)
+            return new Lazy<double>(double.NaN);
+        var air = _path.CombustorInlet;
+        var pressure = _path.CombustorExit.P.Value;
+        var ratio = _path.FuelFlow.Value / air.W.Value;
+        var q = gas.SpecificHumidity.Value;
+        return new Lazy<double>(() =>
+        {
+            var h = (air.H.Value + perfect.FuelEnthalpyFlow(ratio, 1.0)) / (1.0 + ratio);
+            perfect.AtEnthalpy(h, perfect.BurntFraction(ratio, out _), q, out var complete);
+            var waterAirRatio = q / (1.0 - q);
+            var equilibrium = EquilibriumCombustion.Adiabatic(
+                perfect.Fuel,
+                ratio * (1.0 + waterAirRatio),
+                waterAirRatio,
+                air.Tt.Value,
+                pressure
+            );
+            return complete.T - equilibrium.Temperature;
+        });
     }
 
     // Kinetic power added to the air, from the momentum that the jets would have fully expanded.
