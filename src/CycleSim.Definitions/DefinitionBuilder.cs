@@ -25,6 +25,7 @@ internal sealed class DefinitionBuilder(List<TomlTableNode> nodes, string source
         var bypassNozzle = One("bypass_nozzle");
         var bypassDuct = One("bypass_duct");
         var coreDuct = One("core_duct");
+        var mixer = One("mixer");
         var control = One("control");
         var ratings = Many("rating");
 
@@ -42,8 +43,10 @@ internal sealed class DefinitionBuilder(List<TomlTableNode> nodes, string source
         var ports = air.Select(a => Port(a, compressors, turbines, fan.Present)).ToList();
         CheckFlows(compressors, air);
         if (!fan.Present)
-            foreach (var useless in new[] { bypassNozzle, bypassDuct }.Where(t => t.Present))
+            foreach (var useless in new[] { bypassNozzle, bypassDuct, mixer }.Where(t => t.Present))
                 useless.Report("", "has no fan to serve; drop this table or add [fan].");
+        if (mixer.Present && bypassNozzle.Present)
+            bypassNozzle.Report("", "is not needed beside [mixer]: the mixed stream leaves by the core nozzle. Drop one of the two.");
         if (control.Number("idle_speed", 0.3) >= control.Number("full_speed", 1.05))
             control.Report("idle_speed", "must lie below full_speed.");
         var builtRatings = ratings.Select(r => Rating(r, spools.Count)).ToList();
@@ -102,6 +105,14 @@ internal sealed class DefinitionBuilder(List<TomlTableNode> nodes, string source
                 }),
             ],
             AirPorts = ports,
+            Mixer = mixer.Present
+                ? new MixerDefinition
+                {
+                    CoreMach = mixer.Number("core_mach"),
+                    Effectiveness = mixer.Number("effectiveness", 1.0),
+                    PressureLoss = mixer.Number("pressure_loss", 0.0),
+                }
+                : null,
             CoreNozzle = Nozzle(coreNozzle),
             BypassNozzle = Nozzle(bypassNozzle),
             BypassDuctLoss = bypassDuct.Number("pressure_loss", 0.0),

@@ -31,7 +31,8 @@ internal static class GasBuilder
                 gas.Number("burnt_cp"),
                 gas.Number("burnt_gamma"),
                 perfect,
-                gas.Number("count_fuel_mass", 0.0) > 0.0
+                gas.Number("count_fuel_mass", 0.0) > 0.0,
+                gas.Text("fuel_air_ratio") == "heat balance"
             )
             : perfect;
     }

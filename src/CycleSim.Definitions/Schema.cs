@@ -83,6 +83,7 @@ internal static class Schema
                 new("air_gamma", Dimension.Number, "Constant gas: ratio of specific heats of air.", 1, 2, LeastAllowed: false, Example: "1.4"),
                 new("burnt_cp", Dimension.SpecificHeat, "Constant gas: specific heat of burnt gas.", 0, LeastAllowed: false, Example: "\"1148 J/(kg K)\""),
                 new("burnt_gamma", Dimension.Number, "Constant gas: ratio of specific heats of burnt gas.", 1, 2, LeastAllowed: false, Example: "1.333"),
+                new("fuel_air_ratio", Dimension.Text, "Constant gas: read off the chart of the real gas, or from a heat balance with the constant specific heats, enthalpies counted from 0 K.", Choices: ["chart", "heat balance"], Default: "chart"),
                 new("count_fuel_mass", Dimension.Switch, "Constant gas: whether the fuel's mass joins the stream.", Default: "false"),
             ]
         ),
@@ -208,7 +209,17 @@ internal static class Schema
         ),
         Loss("bypass_duct", "Bypass duct."),
         Loss("core_duct", "Duct from the last turbine to the core nozzle."),
-        Nozzle("core_nozzle", "Convergent nozzle of the core stream."),
+        new(
+            "mixer",
+            false,
+            "A forced mixer: core and bypass stream meet at equal static pressure, mix, and leave by the core nozzle.",
+            [
+                new("core_mach", Dimension.Number, "Mach number of the core stream where they meet, at the design point.", 0.1, 0.9, Required: true, Example: "0.45"),
+                new("effectiveness", Dimension.Share, "Share of the ideal gain of thrust by mixing that is had.", 0, 1, Default: "1", Example: "0.8"),
+                new("pressure_loss", Dimension.Share, "Total-pressure loss of mixer and tailpipe at the design point.", 0, 0.5, MostAllowed: false, Default: "0", Example: "\"0.6 %\""),
+            ]
+        ),
+        Nozzle("core_nozzle", "Convergent nozzle of the core stream, or of the mixed one."),
         Nozzle("bypass_nozzle", "Convergent nozzle of the bypass stream."),
         new(
             "control",

@@ -89,6 +89,45 @@ public class TextbookTests
         Same(24894.0, point.NetThrust);
     }
 
+    // Worked example 4.15 of a textbook (Farokhi, Aircraft Propulsion, title from memory): every printed digit of the mixer (131.23 kPa ideal, 0.9907, 0.9709).
+    [Fact]
+    public void Mixed_exhaust_at_Mach_2()
+    {
+        var point = Design("mixed-exhaust-mach-2.toml");
+        Assert.Equal(70.420e3, point.Station("2").TotalPressure, 0.02e3);
+        Assert.Equal(492.12, point.Station("13").TotalTemperature, 0.02);
+        Assert.Equal(906.17, point.Station("3").TotalTemperature, 0.05);
+        Assert.Equal(1101.27, point.Station("5").TotalTemperature, 0.05);
+        var core = point.Station("6");
+        Assert.Equal(132.46e3, core.TotalPressure, 0.01e3);
+        Assert.Equal(1.0, point.Station("16").TotalPressure / core.TotalPressure, 1e-4);
+        Assert.Equal(902.09, point.Station("7").TotalTemperature, 0.05);
+        Assert.Equal(131.23e3, point.Station("7").TotalPressure / 0.98, 0.005e3);
+        Assert.Equal(0.9907, point.Station("7").TotalPressure / 0.98 / core.TotalPressure, 0.00005);
+        Assert.Equal(0.9709, point.Station("7").TotalPressure / core.TotalPressure, 0.00005);
+    }
+
+    // Values by hand calculation independent of this project; a check of the bookkeeping of three spools.
+    [Fact]
+    public void Three_spools_share_the_work()
+    {
+        var point = Design("three-spool.toml");
+        Same(290.46, point.Station("2").TotalTemperature);
+        Same(1.0384e5, point.Station("2").TotalPressure);
+        Same(326.60, point.Station("13").TotalTemperature);
+        Same(566.02, point.Station("24").TotalTemperature);
+        Same(888.37, point.Station("3").TotalTemperature);
+        Same(36.680e5, point.Station("3").TotalPressure);
+        Same(1239.47, point.Station("45").TotalTemperature);
+        Same(13.752e5, point.Station("45").TotalPressure);
+        Same(1014.02, point.Station("47").TotalTemperature);
+        Same(5.7583e5, point.Station("47").TotalPressure);
+        Same(808.11, point.Station("5").TotalTemperature);
+        Same(2.1495e5, point.Station("5").TotalPressure);
+        Same(0.020756, point.FuelAirRatio);
+        Same(262.38, point.Nozzles[1].ExitSpeed);
+    }
+
     // Stage pressure ratios 4 and 3 in series give 12 (common practice, no source).
     [Fact]
     public void Pressure_ratios_in_series_multiply()

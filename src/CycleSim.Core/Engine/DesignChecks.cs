@@ -53,9 +53,33 @@ internal static class DesignChecks
             );
     }
 
+    public static void CheckMixer(
+        EngineDefinition definition,
+        MixerDefinition mixer,
+        double coreTotal,
+        double bypassTotal,
+        double staticPressure
+    )
+    {
+        // Half the total pressure is past the sonic speed of any air: the streams must meet subsonically.
+        if (!(bypassTotal > 1.001 * staticPressure) || !(staticPressure > 0.54 * bypassTotal))
+            throw new SizingException(
+                $"{definition.Name}: the mixer finds no balance of static pressure: the core stream ({coreTotal / 1000.0:F1} kPa "
+                    + $"total) at Mach {mixer.CoreMach:F2} has {staticPressure / 1000.0:F1} kPa, the bypass stream "
+                    + $"{bypassTotal / 1000.0:F1} kPa total, which must lie above it and within subsonic reach. Change the core Mach "
+                    + "number, the fan pressure ratio or the bypass ratio."
+            );
+    }
+
     public static void CheckNozzles(EngineDefinition definition, FlowPath<Plain> path)
     {
         var ambient = path.Inputs[InputLayout.Pressure].Value;
+        if (definition.Mixer is not null)
+        {
+            CheckNozzle(definition, "mixed", path.Mixed.P.Value, ambient);
+            return;
+        }
+
         CheckNozzle(definition, "core", path.CoreExit.P.Value, ambient);
         if (definition.Fan is not null)
             CheckNozzle(definition, "bypass", path.BypassExit.P.Value, ambient);

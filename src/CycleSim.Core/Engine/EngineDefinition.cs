@@ -34,6 +34,10 @@ public sealed record EngineDefinition
 
     public IReadOnlyList<AirPort> AirPorts { get; init; } = [];
 
+    /// <summary>When given, core and bypass stream mix and share the core nozzle.</summary>
+    public MixerDefinition? Mixer { get; init; }
+
+    /// <summary>Nozzle of the core stream, or of the mixed one.</summary>
     public NozzleDefinition CoreNozzle { get; init; } = new();
 
     public NozzleDefinition BypassNozzle { get; init; } = new();
@@ -198,6 +202,19 @@ public sealed record AirPort
     public double ShutAbove { get; init; }
 
     public bool Scheduled => ShutAbove > 0.0;
+}
+
+/// <summary>A forced mixer behind the last turbine.</summary>
+public sealed record MixerDefinition
+{
+    /// <summary>Mach number of the core stream where the streams meet, at the design point.</summary>
+    public required double CoreMach { get; init; }
+
+    /// <summary>Share of the ideal gain of thrust by mixing that is had.</summary>
+    public double Effectiveness { get; init; } = 1.0;
+
+    /// <summary>Total-pressure loss of mixer and tailpipe, friction, at the design point.</summary>
+    public double PressureLoss { get; init; }
 }
 
 public sealed record NozzleDefinition

@@ -67,7 +67,8 @@ public sealed class FlowPath<T>
         BypassExit,
         CombustorInlet,
         CombustorExit,
-        CoreExit;
+        CoreExit,
+        Mixed;
 
     /// <summary>Core compressors: inlet behind its duct, outlet before and after what is taken at its end.</summary>
     public FlowState<T>[] CompressorInlet { get; }
@@ -387,27 +388,92 @@ public sealed class FlowPath<T>
             CoreExit.P *= Duct.PressureRatio(definition.CoreDuctLoss, correctedFlow / _engine.CoreDuctFlow);
         }
 
-        Nozzle.Expand(gas, CoreExit, ambient, definition.CoreNozzle.Efficiency, out CoreJet);
-        if (_sizing)
-            _engine.CoreNozzleArea = CoreExit.W.Value / CoreJet.Flux.Value;
-        Residuals[_residual++] = CoreExit.W / (CoreJet.Flux * _engine.CoreNozzleArea) - 1.0;
-        GrossThrustCore = Nozzle.GrossThrust(CoreJet, CoreExit.W, ambient, definition.CoreNozzle.VelocityCoefficient);
         RamDrag = FanFace.W * Airspeed;
-        NetThrust = GrossThrustCore - RamDrag;
-        if (!_engine.HasFan)
-            return;
+        if (definition.Mixer is { } mixer)
+        {
+            Mix(gas, mixer, ambient);
+            GrossThrustBypass = T.Constant(0.0);
+        }
+        else
+        {
+            GrossThrustCore = Leave(gas, CoreExit, definition.CoreNozzle, ambient, out CoreJet, out var flow);
+            if (_sizing)
+                _engine.CoreNozzleArea = flow.Value;
+            Residuals[_residual++] = flow / _engine.CoreNozzleArea - 1.0;
+            GrossThrustBypass = T.Constant(0.0);
+            if (_engine.HasFan)
+            {
+                GrossThrustBypass = Leave(gas, BypassExit, definition.BypassNozzle, ambient, out BypassJet, out flow);
+                if (_sizing)
+                    _engine.BypassNozzleArea = flow.Value;
+                Residuals[_residual++] = flow / _engine.BypassNozzleArea - 1.0;
+            }
+        }
 
-        Nozzle.Expand(gas, BypassExit, ambient, definition.BypassNozzle.Efficiency, out BypassJet);
+        NetThrust = GrossThrustCore + GrossThrustBypass - RamDrag;
+    }
+
+    /// <summary>Expands a stream through its nozzle: gross thrust, and the throat area that the flow needs.</summary>
+    private static T Leave(
+        in GasRelations<T> gas,
+        in FlowState<T> stream,
+        NozzleDefinition nozzle,
+        in T ambient,
+        out Nozzle.Jet<T> jet,
+        out T area
+    )
+    {
+        Nozzle.Expand(gas, stream, ambient, nozzle.Efficiency, out jet);
+        area = stream.W / jet.Flux;
+        return Nozzle.GrossThrust(jet, stream.W, ambient, nozzle.VelocityCoefficient);
+    }
+
+    /// <summary>
+    /// Forced mixer and common nozzle. Static pressures must agree where the streams meet; the thrust lies between that of
+    /// the streams each expanded alone and that of the ideally mixed one.
+    /// </summary>
+    private void Mix(in GasRelations<T> gas, MixerDefinition mixer, in T ambient)
+    {
         if (_sizing)
-            _engine.BypassNozzleArea = BypassExit.W.Value / BypassJet.Flux.Value;
-        Residuals[_residual++] = BypassExit.W / (BypassJet.Flux * _engine.BypassNozzleArea) - 1.0;
-        GrossThrustBypass = Nozzle.GrossThrust(
-            BypassJet,
-            BypassExit.W,
-            ambient,
-            definition.BypassNozzle.VelocityCoefficient
+            Sizing.ScaleMixer(_engine, gas, mixer, CoreExit, BypassExit);
+        Mixer.StaticState(gas, CoreExit, _engine.MixerCoreArea, out var coreSpeed, out var corePressure);
+        Mixer.StaticState(gas, BypassExit, _engine.MixerBypassArea, out var bypassSpeed, out var bypassPressure);
+        Residuals[_residual++] = bypassPressure / corePressure - 1.0;
+        var momentum =
+            corePressure * _engine.MixerCoreArea
+            + bypassPressure * _engine.MixerBypassArea
+            + CoreExit.W * coreSpeed
+            + BypassExit.W * bypassSpeed;
+        Mixer.MixedState(
+            gas,
+            CoreExit,
+            BypassExit,
+            momentum,
+            _engine.MixerCoreArea + _engine.MixerBypassArea,
+            coreSpeed.Value,
+            out Mixed
         );
-        NetThrust += GrossThrustBypass;
+        var correctedFlow = Duct.CorrectedFlow(gas, Mixed);
+        if (_sizing)
+            _engine.TailpipeFlow = correctedFlow.Value;
+        var left = Duct.PressureRatio(mixer.PressureLoss, correctedFlow / _engine.TailpipeFlow);
+        Mixed.P *= left;
+
+        var nozzle = _engine.Definition.CoreNozzle;
+        var whole = Leave(gas, Mixed, nozzle, ambient, out CoreJet, out var area);
+        if (_sizing)
+            _engine.CoreNozzleArea = area.Value;
+        Residuals[_residual++] = area / _engine.CoreNozzleArea - 1.0;
+        GrossThrustCore = whole;
+        if (mixer.Effectiveness >= 1.0)
+            return;
+        var core = CoreExit;
+        var bypass = BypassExit;
+        core.P *= left;
+        bypass.P *= left;
+        var apart =
+            Leave(gas, core, nozzle, ambient, out _, out _) + Leave(gas, bypass, nozzle, ambient, out _, out _);
+        GrossThrustCore = whole * mixer.Effectiveness + apart * (1.0 - mixer.Effectiveness);
     }
 
     /// <summary>Looks up a compressor: corrected flow (m2), pressure ratio less one, isentropic efficiency.</summary>

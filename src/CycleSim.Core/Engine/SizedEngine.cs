@@ -57,6 +57,13 @@ public sealed class SizedEngine
 
     internal double BypassDuctFlow { get; set; }
 
+    internal double TailpipeFlow { get; set; }
+
+    /// <summary>Areas of the two streams where they meet in a mixer, m2.</summary>
+    public double MixerCoreArea { get; internal set; }
+
+    public double MixerBypassArea { get; internal set; }
+
     internal double FanHubRise { get; set; }
 
     internal double FanHubEfficiency { get; set; }

@@ -121,6 +121,23 @@ public static class Sizing
         Scale(engine.Compressors[k], plainGas, inlet, flow, definition.PressureRatio, efficiency);
     }
 
+    internal static void ScaleMixer<T>(
+        SizedEngine engine,
+        in GasRelations<T> gas,
+        MixerDefinition mixer,
+        in FlowState<T> core,
+        in FlowState<T> bypass
+    )
+        where T : struct, IScalar<T>
+    {
+        var (plainGas, coreState) = InPlain(gas, core);
+        var (_, bypassState) = InPlain(gas, bypass);
+        var (area, staticPressure) = Mixer.AtMach(plainGas, coreState, mixer.CoreMach);
+        DesignChecks.CheckMixer(engine.Definition, mixer, coreState.P.Value, bypassState.P.Value, staticPressure);
+        engine.MixerCoreArea = area;
+        engine.MixerBypassArea = Mixer.AreaAtPressure(plainGas, bypassState, staticPressure);
+    }
+
     internal static void ScaleTurbineWork<T>(
         SizedEngine engine,
         in GasRelations<T> gas,

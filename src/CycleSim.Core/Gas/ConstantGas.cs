@@ -14,6 +14,7 @@ public sealed class ConstantGas : GasModel
     private readonly double _cpAir,
         _cpBurnt;
     private readonly ThermallyPerfectGas _chart;
+    private readonly bool _balancesHeat;
 
     /// <param name="cpAir">J/(kg K)</param>
     /// <param name="gammaAir">ratio of specific heats of air</param>
@@ -21,15 +22,21 @@ public sealed class ConstantGas : GasModel
     /// <param name="gammaBurnt">ratio of specific heats of burnt gas</param>
     /// <param name="chart">the gas whose combustion gives the fuel-air ratio</param>
     /// <param name="countsFuelMass">whether the fuel's mass joins the stream</param>
+    /// <param name="balancesHeat">
+    /// whether the fuel-air ratio is that of a heat balance with the constant specific heats, enthalpies counted from 0 K,
+    /// instead of the real gas's
+    /// </param>
     public ConstantGas(
         double cpAir,
         double gammaAir,
         double cpBurnt,
         double gammaBurnt,
         ThermallyPerfectGas chart,
-        bool countsFuelMass = false
+        bool countsFuelMass = false,
+        bool balancesHeat = false
     )
     {
+        _balancesHeat = balancesHeat;
         (_cpAir, _cpBurnt, _chart, CountsFuelMass) = (cpAir, cpBurnt, chart, countsFuelMass);
         RAir = cpAir * (gammaAir - 1.0) / gammaAir;
         RFuelLine = cpBurnt * (gammaBurnt - 1.0) / gammaBurnt;
@@ -85,6 +92,14 @@ public sealed class ConstantGas : GasModel
         out FuelSlopes slopes
     )
     {
+        if (_balancesHeat)
+        {
+            var rest = efficiency * HeatingValue - _cpBurnt * t4;
+            var ratio = (_cpBurnt * t4 - _cpAir * t3) / rest;
+            slopes = new FuelSlopes { T3 = -_cpAir / rest, T4 = _cpBurnt * (1.0 + ratio) / rest };
+            return ratio;
+        }
+
         _chart.AtTemperature(t3, 0.0, 0.0, out var air);
         var f = _chart.FuelForTemperature(t3, air.H, t4, 0.0, efficiency, out slopes);
         slopes.T3 = slopes.H3 * air.Cp;
@@ -93,7 +108,8 @@ public sealed class ConstantGas : GasModel
         return f;
     }
 
-    public override double FuelEnthalpyFlow(double fuelFlow, double efficiency) => double.NaN;
+    public override double FuelEnthalpyFlow(double fuelFlow, double efficiency) =>
+        _balancesHeat && CountsFuelMass ? fuelFlow * efficiency * HeatingValue : double.NaN;
 
     public override double BurntFraction(double fuelAirRatio, out double slope)
     {

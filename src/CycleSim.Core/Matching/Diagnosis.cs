@@ -74,8 +74,10 @@ public static class Diagnosis
             names.Add($"the flow of {engine.Compressors[k].Name}");
         foreach (var turbine in engine.Turbines)
             names.Add($"the capacity of {turbine.Definition.Name}");
+        if (engine.Definition.Mixer is not null)
+            names.Add("the balance of static pressures in the mixer");
         names.Add("the flow of the core nozzle");
-        if (engine.HasFan)
+        if (engine.HasFan && engine.Definition.Mixer is null)
             names.Add("the flow of the bypass nozzle");
         return row >= 0 && row < names.Count ? names[row] : "the power setting";
     }

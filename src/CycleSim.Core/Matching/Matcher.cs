@@ -321,7 +321,8 @@ public sealed class Matcher
             if (Refusal(Engine.Compressors[k], k + 1, _x[beta++]) is var refusal and not MatchStatus.Solved)
                 return outcome with { Status = refusal, Culprit = k + 1 };
         var ambient = _path.Inputs[InputLayout.Pressure].Value;
-        if (!(_path.CoreExit.P.Value > ambient) || !(_path.CombustorInlet.W.Value > 0.0))
+        var last = Engine.Definition.Mixer is null ? _path.CoreExit.P.Value : _path.Mixed.P.Value;
+        if (!(last > ambient) || !(_path.CombustorInlet.W.Value > 0.0))
             return outcome with { Status = MatchStatus.NoThroughflow, Culprit = 0 };
         if (Engine.HasFan && (!(_path.BypassExit.P.Value > ambient) || !(_path.FanTip.W.Value > 0.0)))
             return outcome with { Status = MatchStatus.NoThroughflow, Culprit = 1 };

@@ -59,8 +59,9 @@ internal static class PointAudit
             whole.Power(-offtake - power * (1.0 - spool.MechanicalEfficiency));
         }
 
+        var mixes = engine.Definition.Mixer is not null;
         lines.Add(Through("core duct", gas, [p.TurbineOutlet[^1]], [p.CoreExit], 0.0));
-        Leave(whole, gas, p.CoreExit);
+        Leave(whole, gas, mixes ? p.Mixed : p.CoreExit);
         if (engine.HasFan)
         {
             List<FlowState<Plain>> entering = [p.FanTip];
@@ -68,7 +69,10 @@ internal static class PointAudit
                 if (engine.Ports[i].Port.To == AirDestination.BypassDuct)
                     entering.Add(PortState(engine, p, gas, i));
             lines.Add(Through("bypass duct", gas, entering, [p.BypassExit], 0.0));
-            Leave(whole, gas, p.BypassExit);
+            if (mixes)
+                lines.Add(Through("mixer", gas, [p.CoreExit, p.BypassExit], [p.Mixed], 0.0));
+            else
+                Leave(whole, gas, p.BypassExit);
         }
 
         for (var i = 0; i < engine.Ports.Length; i++)

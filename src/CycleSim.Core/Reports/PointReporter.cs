@@ -93,8 +93,9 @@ public sealed class PointReporter
     {
         var p = _path;
         double Power(double thrust, double flow) => flow > 0.0 ? 0.5 * thrust * thrust / flow : 0.0;
-        return Power(p.GrossThrustCore.Value, p.CoreExit.W.Value)
-            + (_engine.HasFan ? Power(p.GrossThrustBypass.Value, p.BypassExit.W.Value) : 0.0)
+        var mixes = _engine.Definition.Mixer is not null;
+        return Power(p.GrossThrustCore.Value, mixes ? p.Mixed.W.Value : p.CoreExit.W.Value)
+            + (_engine.HasFan && !mixes ? Power(p.GrossThrustBypass.Value, p.BypassExit.W.Value) : 0.0)
             - 0.5 * p.FanFace.W.Value * p.Airspeed.Value * p.Airspeed.Value;
     }
 
@@ -222,13 +223,28 @@ public sealed class PointReporter
     {
         var ambient = _path.Inputs[InputLayout.Pressure].Value;
         var definition = _engine.Definition;
+        var mixes = definition.Mixer is not null;
         var list = new List<NozzleReport>
         {
-            One("core", _path.CoreJet, _path.CoreExit.P.Value, definition.CoreNozzle, _engine.CoreNozzleArea, _path.GrossThrustCore.Value),
+            One(
+                mixes ? "mixed" : "core",
+                _path.CoreJet,
+                mixes ? _path.Mixed.P.Value : _path.CoreExit.P.Value,
+                definition.CoreNozzle,
+                _engine.CoreNozzleArea,
+                _path.GrossThrustCore.Value
+            ),
         };
-        if (_engine.HasFan)
+        if (_engine.HasFan && !mixes)
             list.Add(
-                One("bypass", _path.BypassJet, _path.BypassExit.P.Value, definition.BypassNozzle, _engine.BypassNozzleArea, _path.GrossThrustBypass.Value)
+                One(
+                    "bypass",
+                    _path.BypassJet,
+                    _path.BypassExit.P.Value,
+                    definition.BypassNozzle,
+                    _engine.BypassNozzleArea,
+                    _path.GrossThrustBypass.Value
+                )
             );
         return list;
 

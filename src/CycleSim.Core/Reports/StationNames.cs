@@ -39,12 +39,18 @@ public static class StationNames
             list.Add((last ? "5" : k == 0 ? "45" : "47", $"{name} exit", path.TurbineOutlet[k]));
         }
 
-        list.Add(("7", "core nozzle inlet", path.CoreExit));
+        var mixes = engine.Definition.Mixer is not null;
+        list.Add(mixes ? ("6", "mixer inlet, core", path.CoreExit) : ("7", "core nozzle inlet", path.CoreExit));
         if (engine.HasFan)
         {
             list.Add(("13", "fan exit, bypass", path.FanTip));
-            list.Add(("17", "bypass nozzle inlet", path.BypassExit));
+            list.Add(
+                mixes ? ("16", "mixer inlet, bypass", path.BypassExit) : ("17", "bypass nozzle inlet", path.BypassExit)
+            );
         }
+
+        if (mixes)
+            list.Add(("7", "nozzle inlet, mixed", path.Mixed));
 
         return list;
     }
