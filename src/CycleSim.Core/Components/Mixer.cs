@@ -93,7 +93,7 @@ public static class Mixer
             slope = g * (1.0 - r.Value * p.T / (v * v) - r.Value / p.Cp);
             var step = (g * v + g * r.Value * p.T / v - wanted) / slope;
             var sound = Math.Sqrt(p.Cp / (p.Cp - r.Value) * r.Value * p.T);
-            var next = Math.Clamp(v - step, 0.3 * v, LastMach * sound);
+            var next = Math.Min(Math.Max(v - step, 0.3 * v), LastMach * sound);
             var settled = Math.Abs(next - v) < 1e-9 * v;
             v = next;
             if (settled)

@@ -50,8 +50,8 @@ public static class CompressorShape
         // s: 1 on the surge line, 0 at best efficiency, -1.5 where the line has fallen to almost no pressure rise.
         var s = (beta - DesignBeta) / (1.0 - DesignBeta);
         var slack = Math.Max(0.0, 1.0 - speed);
-        var width = 0.05 + 0.20 * slack;
-        var height = 0.22 + 0.25 * slack;
+        var width = 0.05 + 0.32 * slack;
+        var height = 0.22 + 0.32 * slack;
         var flow = backboneFlow * (1.0 - width * (s + (s < 0.0 ? s * s / 3.0 : 0.5 * s * s)));
         var droop = s < 0.0 ? (1.0 - LeastRise - ChokeEnd * height) / (ChokeEnd * ChokeEnd) : 0.3 * height;
         var pressureRatio = 1.0 + (backbone - 1.0) * (1.0 + height * s - droop * s * s);

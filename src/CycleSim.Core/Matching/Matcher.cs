@@ -33,6 +33,7 @@ public sealed class Matcher
     private readonly double[] _shift = new double[Dual.Width];
     private readonly double[] _fullShift = new double[Dual.Width];
     private readonly double[] _wantedInputs;
+    private readonly double[] _coldStart = new double[Dual.Width];
     private readonly double[] _pathStart = new double[Dual.Width];
     private int _n;
     private MatchingProblem _problem;
@@ -68,6 +69,18 @@ public sealed class Matcher
         Prepare(problem, start);
         Array.Clear(_shift);
         var outcome = Newton();
+        if (outcome.Status == MatchStatus.NotConverged && ColdStart.Guess(Engine, Inputs, problem, _coldStart))
+        {
+            var (iterations, evaluations) = (outcome.Iterations, outcome.Evaluations);
+            Prepare(problem, _coldStart);
+            outcome = Newton();
+            outcome = outcome with
+            {
+                Iterations = outcome.Iterations + iterations,
+                Evaluations = outcome.Evaluations + evaluations,
+            };
+        }
+
         if (outcome.Status == MatchStatus.NotConverged)
         {
             var followed = Follow(outcome.Iterations, outcome.Evaluations);
@@ -139,7 +152,8 @@ public sealed class Matcher
         var evaluations = 1;
         Span<double> step = stackalloc double[Dual.Width];
         Span<Vector512<double>> rows = stackalloc Vector512<double>[Dual.Width];
-        for (var iteration = 0; iteration < MostIterations; iteration++)
+        var iteration = 0;
+        for (; iteration < MostIterations; iteration++)
         {
             if (norm <= Tolerance)
                 return new MatchOutcome(MatchStatus.Solved, norm, iteration, evaluations, -1);
@@ -181,8 +195,8 @@ public sealed class Matcher
         }
 
         return norm <= Tolerance
-            ? new MatchOutcome(MatchStatus.Solved, norm, MostIterations, evaluations, -1)
-            : new MatchOutcome(MatchStatus.NotConverged, norm, MostIterations, evaluations, Worst());
+            ? new MatchOutcome(MatchStatus.Solved, norm, iteration, evaluations, -1)
+            : new MatchOutcome(MatchStatus.NotConverged, norm, iteration, evaluations, Worst());
     }
 
     /// <summary>

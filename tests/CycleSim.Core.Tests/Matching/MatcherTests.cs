@@ -10,51 +10,6 @@ public class MatcherTests
 {
     private static readonly SizedEngine Twin = Sizing.Size(TestEngines.TwinSpool());
 
-    // -1 000 to 43 000 ft, Mach 0 to 0.88 within the corridor of a transport (350 kt calibrated, Mach 0.88), ISA -35 to +35,
-    // 10 to 100 % of the rating, with customer bleed and power offtake now and then.
-    [Fact]
-    public void Twenty_thousand_feasible_points_all_converge()
-    {
-        var rating = new Rating(Twin, Twin.Definition.Ratings[0]);
-        var matcher = new Matcher(Twin);
-        var random = new Random(20261201);
-        var failures = new List<string>();
-        long iterations = 0;
-        const int Points = 20000;
-        for (var i = 0; i < Points; i++)
-        {
-            var altitude = (-1000.0 + 44000.0 * random.NextDouble()) * 0.3048;
-            var pressure = StandardAtmosphere.Pressure(altitude);
-            var fastest = Math.Min(0.88, Airspeed.MachFromCalibrated(350.0 * 1852.0 / 3600.0, pressure));
-            var mach = fastest * random.NextDouble();
-            if (altitude > 6000.0 && mach < 0.3)
-                mach = 0.3 + (fastest - 0.3) * random.NextDouble();
-            var flight = FlightCondition.AtIsaOffset(altitude, mach, -35.0 + 70.0 * random.NextDouble());
-            var inputs = Twin.Layout.Defaults(Twin.Definition, flight);
-            if (i % 3 == 0)
-            {
-                inputs[Twin.Layout.PortFraction(3)] = 0.05 * random.NextDouble();
-                inputs[Twin.Layout.PowerOfftake(1)] = 200e3 * random.NextDouble();
-            }
-
-            var flat = rating.FlatThrust(altitude, mach);
-            var full = rating.Solve(inputs, flat, out _);
-            Assert.True(full.Solved, $"rating at {altitude:F0} m, Mach {mach:F2}: {full.Status}");
-            var wanted = rating.Matcher.Path.NetThrust.Value * (0.1 + 0.9 * random.NextDouble());
-            inputs.CopyTo(matcher.Inputs, 0);
-            var outcome = matcher.Solve(MatchingProblem.For(Quantity.NetThrust, wanted));
-            iterations += outcome.Iterations;
-            if (!outcome.Solved || !(outcome.Residual <= 1e-10))
-                failures.Add(
-                    $"{altitude:F0} m, Mach {mach:F3}, {flight.IsaOffset:F1} K, {wanted:F0} N: "
-                        + Diagnosis.Of(Twin, matcher, outcome)
-                );
-        }
-
-        Assert.True(failures.Count == 0, $"{failures.Count} failed:\n" + string.Join("\n", failures.Take(10)));
-        Assert.InRange((double)iterations / Points, 0.0, 8.0);
-    }
-
     public static TheoryData<Quantity> Settings =>
         [
             Quantity.NetThrust,
