@@ -1,15 +1,25 @@
 namespace CycleSim.Definitions;
 
-/// <summary>Guesses what a misspelt word was meant to be.</summary>
+/// <summary>Repeats what stood in a file and guesses what a misspelt word was meant to be.</summary>
 internal static class Spelling
 {
     public static string Suggest(string word, IEnumerable<string> known)
     {
-        var best = known.OrderBy(k => Distance(word.ToLowerInvariant(), k.ToLowerInvariant())).FirstOrDefault();
-        return best is not null && Distance(word.ToLowerInvariant(), best.ToLowerInvariant()) <= Math.Max(2, word.Length / 3)
+        var best = known.Where(k => k.Length > 0).MinBy(k => Away(word, k));
+        return best is not null && Away(word, best) <= Math.Min(Math.Max(2, word.Length / 3), word.Length - 1)
             ? $" Did you mean '{best}'?"
             : "";
     }
+
+    /// <summary>A text of a file as it is repeated in a message: on one line, not at length.</summary>
+    public static string OneLine(string text)
+    {
+        const int longest = 60;
+        var clean = string.Concat(text.Trim().Select(c => char.IsControl(c) ? ' ' : c));
+        return clean.Length <= longest ? clean : clean[..longest] + " ...";
+    }
+
+    private static int Away(string word, string known) => Distance(word.ToLowerInvariant(), known.ToLowerInvariant());
 
     /// <summary>Levenshtein distance.</summary>
     private static int Distance(string a, string b)

@@ -1,38 +1,10 @@
 using System.Globalization;
-using UnitsNet;
+using System.Text.RegularExpressions;
 
 namespace CycleSim.Definitions;
 
-/// <summary>What kind of value a key holds.</summary>
-public enum Dimension
-{
-    Text,
-
-    /// <summary>A TOML number without unit.</summary>
-    Number,
-
-    /// <summary>A share: a number or a text in per cent.</summary>
-    Share,
-    Whole,
-    Switch,
-    Length,
-    Pressure,
-    Temperature,
-    TemperatureDifference,
-    MassFlow,
-    Force,
-    Power,
-    RotationalSpeed,
-    SpecificEnergy,
-    SpecificHeat,
-    Speed,
-
-    /// <summary>The dimension follows from another key of the same table.</summary>
-    Dependent,
-}
-
 /// <summary>Reads a quantity with its unit into SI.</summary>
-public static class Units
+public static partial class Units
 {
     /// <summary>An example of how a value of this dimension is written.</summary>
     public static string Example(Dimension dimension) =>
@@ -78,97 +50,59 @@ public static class Units
             _ => "a text",
         };
 
-    private static readonly Dimension[] WithUnits =
-    [
-        Dimension.Length,
-        Dimension.Pressure,
-        Dimension.Temperature,
-        Dimension.MassFlow,
-        Dimension.Force,
-        Dimension.Power,
-        Dimension.RotationalSpeed,
-        Dimension.SpecificEnergy,
-        Dimension.SpecificHeat,
-        Dimension.Speed,
-        Dimension.Share,
-    ];
-
     /// <summary>
-    /// Reads a text into SI (m, Pa, K, kg/s, N, W, m/s, 1/min for rotational speed, J/kg, J/(kg K), shares as ratios). On
-    /// failure <paramref name="problem"/> says what was wrong and what was expected.
+    /// Reads a text, a number with a decimal point and then a unit, into SI (m, Pa, K, kg/s, N, W, m/s, 1/min for rotational
+    /// speed, J/kg, J/(kg K), shares as ratios). On failure the value is NaN and <paramref name="problem"/> says what was
+    /// wrong and what was expected.
     /// </summary>
     public static bool TryRead(string text, Dimension dimension, out double value, out string problem)
     {
-        problem = "";
-        if (TryParse(text, dimension, out value) && double.IsFinite(value))
-            return true;
-        var expected = $"Expected {Name(dimension)}, for instance {Example(dimension)}.";
-        if (double.TryParse(text, NumberStyles.Float, CultureInfo.InvariantCulture, out _))
-            problem = $"'{text}' has no unit. {expected}";
-        else
-        {
-            var other = WithUnits.FirstOrDefault(d => d != dimension && TryParse(text, d, out _), Dimension.Text);
-            problem =
-                other != Dimension.Text
-                    ? $"'{text}' is {Name(other)}. {expected}"
-                    : $"'{text}' cannot be read. {expected}";
-        }
-
-        return false;
-    }
-
-    private static bool TryParse(string text, Dimension dimension, out double value)
-    {
-        var culture = CultureInfo.InvariantCulture;
-        var t = text.Trim().Replace("degC", "°C").Replace("degF", "°F").Replace("degR", "°R");
         value = double.NaN;
-        switch (dimension)
-        {
-            case Dimension.Share:
-                return t.EndsWith('%') && Scaled(t[..^1], 0.01, out value);
-            case Dimension.TemperatureDifference:
-                return t.EndsWith('K') && Scaled(t[..^1], 1.0, out value)
-                    || t.EndsWith("°C", StringComparison.Ordinal) && Scaled(t[..^2], 1.0, out value)
-                    || t.EndsWith("°F", StringComparison.Ordinal) && Scaled(t[..^2], 5.0 / 9.0, out value)
-                    || t.EndsWith("°R", StringComparison.Ordinal) && Scaled(t[..^2], 5.0 / 9.0, out value);
-            case Dimension.Length:
-                return Length.TryParse(t, culture, out var length) && Set(length.Meters, out value);
-            case Dimension.Pressure:
-                return Pressure.TryParse(t, culture, out var pressure) && Set(pressure.Pascals, out value);
-            case Dimension.Temperature:
-                return Temperature.TryParse(t, culture, out var temperature) && Set(temperature.Kelvins, out value);
-            case Dimension.MassFlow:
-                return MassFlow.TryParse(t, culture, out var flow) && Set(flow.KilogramsPerSecond, out value);
-            case Dimension.Force:
-                return Force.TryParse(t, culture, out var force) && Set(force.Newtons, out value);
-            case Dimension.Power:
-                return Power.TryParse(t, culture, out var power) && Set((double)power.Watts, out value);
-            case Dimension.RotationalSpeed:
-                return RotationalSpeed.TryParse(t, culture, out var speed)
-                    && Set(speed.RevolutionsPerMinute, out value);
-            case Dimension.SpecificEnergy:
-                return SpecificEnergy.TryParse(t, culture, out var energy) && Set(energy.JoulesPerKilogram, out value);
-            case Dimension.Speed:
-                return Speed.TryParse(t.EndsWith(" kt", StringComparison.Ordinal) ? t[..^1] + "n" : t, culture, out var v)
-                    && Set(v.MetersPerSecond, out value);
-            case Dimension.SpecificHeat:
-                return t.EndsWith(" kJ/(kg K)", StringComparison.Ordinal) && Scaled(t[..^10], 1000.0, out value)
-                    || t.EndsWith(" J/(kg K)", StringComparison.Ordinal) && Scaled(t[..^9], 1.0, out value);
-            default:
-                return false;
-        }
+        var expected = $"Expected {Name(dimension)}, for instance {Example(dimension)}.";
+        var units = string.Join(", ", UnitTable.Spellings(dimension));
+        var shown = $"'{Spelling.OneLine(text)}'";
+        var parts = NumberAndUnit().Match(text);
+        problem =
+            text.Contains(',')
+                ? $"{shown} has a comma; write a decimal point, and nothing between thousands. {expected}"
+            : !parts.Success ? $"{shown} cannot be read. {expected}"
+            : "";
+        if (problem.Length > 0)
+            return false;
+
+        var number = double.Parse(parts.Groups[1].Value, NumberStyles.Float, CultureInfo.InvariantCulture);
+        var unit = Degrees(parts.Groups[2].Value.Trim());
+        if (unit.Length == 0)
+            problem = $"{shown} has no unit. {expected} Units: {units}.";
+        else if (UnitTable.Find(dimension, unit) is not { } known)
+            problem = $"{shown} {WrongUnit(unit, dimension)} {expected} Units: {units}.";
+        else if (!Fits(number) || !double.IsFinite(known.ToInside(number)))
+            problem = $"{shown} is too large a number. {expected}";
+        else
+            value = known.ToInside(number);
+        return problem.Length == 0;
     }
 
-    private static bool Set(double from, out double to)
+    // Beyond this nothing in an engine is meant, and conversions may overflow.
+    private static bool Fits(double number) => Math.Abs(number) < 1e20;
+
+    private static string WrongUnit(string unit, Dimension dimension)
     {
-        to = from;
-        return true;
+        var other = UnitTable.Dimensions.FirstOrDefault(d => UnitTable.Find(d, unit) is not null, Dimension.Text);
+        if (other != Dimension.Text)
+            return $"is {Name(other)}.";
+        var near = UnitTable
+            .Spellings(dimension)
+            .FirstOrDefault(u => u.Equals(unit, StringComparison.OrdinalIgnoreCase));
+        return $"has an unknown unit, '{Spelling.OneLine(unit)}'." + (near is null ? "" : $" Did you mean '{near}'?");
     }
 
-    private static bool Scaled(string number, double factor, out double value)
-    {
-        var read = double.TryParse(number, NumberStyles.Float, CultureInfo.InvariantCulture, out value);
-        value *= factor;
-        return read;
-    }
+    // The raised o of Spanish keyboards and the one-letter signs look the same as the degree sign.
+    private static string Degrees(string unit) => unit.Replace('º', '°').Replace("℃", "°C").Replace("℉", "°F");
+
+    [GeneratedRegex(
+        @"^\s*([+-]?(?:[0-9]+\.?[0-9]*|\.[0-9]+)(?:[eE][+-]?[0-9]+)?)(?![0-9._])(.*)$",
+        RegexOptions.Singleline
+    )]
+    private static partial Regex NumberAndUnit();
 }
