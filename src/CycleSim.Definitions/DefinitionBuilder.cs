@@ -1,6 +1,4 @@
-using CycleSim.Air;
 using CycleSim.Engine;
-using CycleSim.Gas;
 
 namespace CycleSim.Definitions;
 
@@ -30,7 +28,7 @@ internal sealed class DefinitionBuilder(List<TomlTableNode> nodes, string source
         var ratings = Many("rating");
 
         var builtGas = GasBuilder.Build(gas, fuel);
-        var point = DesignPoint(design, fan);
+        var point = DesignPointBuilder.Build(design, fan, gas);
         if (inlet.Has("pressure_recovery") && inlet.Has("ram_efficiency"))
             inlet.Report("ram_efficiency", "is given beside pressure_recovery; give one of the two.");
         Efficiency(fan, "");
@@ -38,10 +36,10 @@ internal sealed class DefinitionBuilder(List<TomlTableNode> nodes, string source
             fan.Report("hub_polytropic_efficiency", "is given beside hub_isentropic_efficiency; give one of the two.");
         foreach (var table in compressors.Concat(turbines))
             Efficiency(table, "");
-        CheckNames(compressors, turbines, spools, air, ratings);
-        CheckSpools(fan, compressors, turbines, spools);
-        var ports = air.Select(a => Port(a, compressors, turbines, fan.Present)).ToList();
-        CheckFlows(compressors, air);
+        Names.Check(top, compressors, turbines, spools, air, ratings);
+        Spools.Check(fan, compressors, turbines, spools);
+        var ports = air.Select(a => AirPorts.Build(a, compressors, turbines, fan.Present)).ToList();
+        AirPorts.CheckFlows(compressors, air);
         if (!fan.Present)
             foreach (var useless in new[] { bypassNozzle, bypassDuct, mixer }.Where(t => t.Present))
                 useless.Report("", "has no fan to serve; drop this table or add [fan].");
@@ -49,7 +47,7 @@ internal sealed class DefinitionBuilder(List<TomlTableNode> nodes, string source
             bypassNozzle.Report("", "is not needed beside [mixer]: the mixed stream leaves by the core nozzle. Drop one of the two.");
         if (control.Number("idle_speed", 0.3) >= control.Number("full_speed", 1.05))
             control.Report("idle_speed", "must lie below full_speed.");
-        var builtRatings = ratings.Select(r => Rating(r, spools.Count)).ToList();
+        var builtRatings = ratings.Select(r => RatingBuilder.Build(r, spools.Count, source, problems)).ToList();
         if (problems.Count > 0)
             return null;
 
@@ -165,57 +163,6 @@ internal sealed class DefinitionBuilder(List<TomlTableNode> nodes, string source
                 );
     }
 
-    private static DesignPoint? DesignPoint(TableReader design, TableReader fan)
-    {
-        if (!design.Present)
-            return null;
-        var place = design.ExactlyOne("altitude", "pressure");
-        if (design.Has("temperature") && design.Has("isa_offset"))
-            design.Report("temperature", "is given beside isa_offset; give one of the two.");
-        design.ExactlyOne("mass_flow", "net_thrust");
-        design.ExactlyOne("T4", "T41");
-        var bypass = design.Number("bypass_ratio", 0.0);
-        if (bypass > 0.0 && !fan.Present)
-            design.Report("bypass_ratio", "is above zero, but there is no [fan] to feed a bypass duct.");
-        if (!(bypass > 0.0) && fan.Present)
-            design.Report("bypass_ratio", "must be above zero for an engine with a [fan], for instance bypass_ratio = 5.8.");
-        if (!place || double.IsNaN(design.Number("mach")))
-            return null;
-        try
-        {
-            return new DesignPoint
-            {
-                Flight = Flight(design),
-                MassFlow = design.Number("mass_flow", 0.0),
-                NetThrust = design.Number("net_thrust", 0.0),
-                BypassRatio = bypass,
-                CombustorExitTemperature = design.Number("T4", 0.0),
-                RotorInletTemperature = design.Number("T41", 0.0),
-            };
-        }
-        catch (ArgumentOutOfRangeException error)
-        {
-            design.Report("", error.Message.Split(" (Parameter")[0]);
-            return null;
-        }
-    }
-
-    private static FlightCondition Flight(TableReader design)
-    {
-        var mach = design.Number("mach");
-        var pressure = design.Has("pressure")
-            ? design.Number("pressure")
-            : StandardAtmosphere.Pressure(design.Number("altitude"));
-        var altitude = design.Has("altitude") ? design.Number("altitude") : StandardAtmosphere.PressureAltitude(pressure);
-        var temperature = design.Has("temperature")
-            ? design.Number("temperature")
-            : StandardAtmosphere.Temperature(altitude) + design.Number("isa_offset", 0.0);
-        var flight = design.Has("pressure")
-            ? FlightCondition.AtPressure(pressure, mach, temperature)
-            : FlightCondition.AtTemperature(altitude, mach, temperature);
-        return flight.WithRelativeHumidity(design.Number("relative_humidity", 0.0));
-    }
-
     private static DesignEfficiency Efficiency(TableReader table, string prefix)
     {
         var isentropic = prefix + "isentropic_efficiency";
@@ -242,175 +189,6 @@ internal sealed class DefinitionBuilder(List<TomlTableNode> nodes, string source
             HubPressureRatio = fan.Number("hub_pressure_ratio", fan.Number("pressure_ratio")),
             HubEfficiency = hub,
             GearRatio = fan.Number("gear_ratio", 1.0),
-        };
-    }
-
-    private static void CheckNames(params IEnumerable<TableReader>[] lists)
-    {
-        foreach (var list in lists)
-        {
-            var seen = new Dictionary<string, int>(StringComparer.OrdinalIgnoreCase);
-            foreach (var table in list)
-            {
-                var name = table.Text("name");
-                if (name.Length > 0 && !seen.TryAdd(name, table.Node.Line))
-                    table.Report("name", $"'{name}' is already the name of the one in line {seen[name]}.");
-            }
-        }
-    }
-
-    private static void CheckSpools(
-        TableReader fan,
-        List<TableReader> compressors,
-        List<TableReader> turbines,
-        List<TableReader> spools
-    )
-    {
-        var names = spools.Select(s => s.Text("name")).ToList();
-        var driven = compressors.Concat(fan.Present ? [fan] : []).ToList();
-        foreach (var table in driven.Concat(turbines))
-        {
-            var spool = table.Text("spool");
-            if (spool.Length > 0 && !names.Contains(spool))
-                table.Report(
-                    "spool",
-                    $"'{spool}' is not the name of a [[spool]]; there are {string.Join(", ", names)}.{Spelling.Suggest(spool, names)}"
-                );
-        }
-
-        foreach (var spool in spools.Where(s => s.Text("name").Length > 0))
-        {
-            var name = spool.Text("name");
-            var count = turbines.Count(t => t.Text("spool") == name);
-            if (count == 0)
-                spool.Report("name", $"spool '{name}' has no turbine to turn it; give a [[turbine]] spool = \"{name}\".");
-            if (count > 1)
-                spool.Report("name", $"spool '{name}' has {count} turbines; give it one with the stages of all.");
-            if (driven.All(d => d.Text("spool") != name))
-                spool.Report("name", $"spool '{name}' turns neither fan nor compressor.");
-        }
-
-        if (spools.Count > 3)
-            spools[3].Report("", "is a fourth spool; an engine has at most three.");
-        if (compressors.Count > 3)
-            compressors[3].Report("", "is a fourth compressor of the core stream; there are at most three.");
-    }
-
-    private static AirPort Port(
-        TableReader air,
-        List<TableReader> compressors,
-        List<TableReader> turbines,
-        bool hasBypass
-    )
-    {
-        var from = air.Text("from");
-        var compressorNames = compressors.Select(c => c.Text("name")).ToList();
-        if (from.Length > 0 && !compressorNames.Contains(from))
-            air.Report(
-                "from",
-                $"'{from}' is not the name of a [[compressor]]; there are {string.Join(", ", compressorNames)}.{Spelling.Suggest(from, compressorNames)}"
-            );
-        var (destination, turbine) = Destination(air, turbines, hasBypass);
-        if (air.Has("open_below") != air.Has("shut_above"))
-            air.Report("", "needs open_below and shut_above together, or neither.");
-        else if (air.Number("open_below", 0.0) >= air.Number("shut_above", 1.0))
-            air.Report("open_below", "must lie below shut_above.");
-        return new AirPort
-        {
-            Name = air.Text("name"),
-            From = from,
-            To = destination,
-            Turbine = turbine,
-            WorkFraction = air.Number("work_fraction", 1.0),
-            Fraction = air.Number("fraction", 0.0),
-            Flow = air.Number("flow", 0.0),
-            OpenBelow = air.Number("open_below", 0.0),
-            ShutAbove = air.Number("shut_above", 0.0),
-        };
-    }
-
-    private static (AirDestination To, string? Turbine) Destination(
-        TableReader air,
-        List<TableReader> turbines,
-        bool hasBypass
-    )
-    {
-        var to = air.Text("to");
-        if (to is "" or "overboard")
-            return (AirDestination.Overboard, null);
-        if (to == "bypass duct")
-        {
-            if (!hasBypass)
-                air.Report("to", "'bypass duct' does not exist in an engine without [fan]; say \"overboard\".");
-            return (AirDestination.BypassDuct, null);
-        }
-
-        var names = turbines.Select(t => t.Text("name")).ToList();
-        foreach (var name in names.Where(n => n.Length > 0))
-        {
-            if (to == name + " vane")
-                return (AirDestination.Vane, name);
-            if (to == name + " rotor")
-                return (AirDestination.Rotor, name);
-        }
-
-        var possible = new[] { "overboard", "bypass duct" }
-            .Concat(names.SelectMany(n => new[] { n + " vane", n + " rotor" }))
-            .ToList();
-        air.Report(
-            "to",
-            $"'{to}' is no place for air to go; there are {string.Join(", ", possible.Select(p => $"\"{p}\""))}.{Spelling.Suggest(to, possible)}"
-        );
-        return (AirDestination.Overboard, null);
-    }
-
-    private static void CheckFlows(List<TableReader> compressors, List<TableReader> air)
-    {
-        foreach (var compressor in compressors)
-        {
-            var taken = air.Where(a => a.Text("from") == compressor.Text("name")).ToList();
-            var sum = taken.Sum(a => a.Number("fraction", 0.0));
-            if (sum >= 1.0)
-                taken[^1].Report(
-                    "fraction",
-                    $"brings what is taken from '{compressor.Text("name")}' to {sum * 100.0:F0} % of its flow; less than 100 % is there."
-                );
-        }
-    }
-
-    private RatingDefinition Rating(TableReader rating, int spools)
-    {
-        var limits = new List<Limit>();
-        foreach (var node in rating.Node.Children)
-        {
-            var limit = new TableReader(Schema.Find("rating.limit")!, node, source, problems);
-            var name = limit.Text("quantity");
-            if (name.Length == 0)
-                continue;
-            var quantity = name == "EGT" ? Quantity.T45 : Enum.Parse<Quantity>(name, ignoreCase: true);
-            if (quantity == Quantity.N2 && spools < 2 || quantity == Quantity.N3 && spools < 3)
-                limit.Report("quantity", $"{name} needs a spool that this engine has not; it has {spools}.");
-            var dimension = quantity switch
-            {
-                Quantity.P3 => Dimension.Pressure,
-                Quantity.N1 or Quantity.N2 or Quantity.N3 => Dimension.Share,
-                Quantity.Epr => Dimension.Number,
-                _ => Dimension.Temperature,
-            };
-            if (limit.Quantity("value", dimension) is not { } value)
-                continue;
-            if (value > 0.0)
-                limits.Add(new Limit(quantity, value));
-            else
-                limit.Report("value", "must be above zero.");
-        }
-
-        return new RatingDefinition
-        {
-            Name = rating.Text("name"),
-            Thrust = rating.Number("thrust", 0.0),
-            FlatTo = rating.Number("flat_to"),
-            Limits = limits,
         };
     }
 

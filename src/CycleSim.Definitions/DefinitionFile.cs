@@ -28,7 +28,11 @@ public static class DefinitionFile
                 throw Whole(path, $"is {info.Length / 1024} kB long; a definition file is a text of a few kilobytes.");
             text = File.ReadAllText(path, new UTF8Encoding(false, true));
         }
-        catch (Exception error) when (error is IOException or UnauthorizedAccessException or DecoderFallbackException)
+        catch (Exception error) when (error is IOException
+                or UnauthorizedAccessException
+                or DecoderFallbackException
+                or ArgumentException
+                or NotSupportedException)
         {
             throw Whole(
                 path,

@@ -14,11 +14,8 @@ public static class DefinitionReference
 
             A definition file says what an engine is. It is TOML; a value with a dimension is a text with its unit
             (`"35000 ft"`, `"420 kg/s"`, `"1650 K"`), a pure ratio is a number, a share is a number or a text in per cent. Unknown
-            keys are refused, and everything wrong in a file is reported together, each with its line.
-
-            Units: lengths m, km, ft; pressures Pa, kPa, hPa, bar, psi; temperatures K, °C (or degC), °F (or degF), °R; mass flows
-            kg/s, lb/s, kg/h, lb/h; forces N, kN, lbf; powers W, kW, hp; speeds rpm; specific energies J/kg, kJ/kg, MJ/kg; specific
-            heats J/(kg K).
+            keys are refused, and everything wrong in a file is reported together, each with its line. Names are words of letters,
+            digits, `-` and `_`, a letter first.
 
             This page is generated; a test keeps it up to date.
 
@@ -44,6 +41,11 @@ public static class DefinitionReference
                 );
         }
 
+        page.Append("\n## Units\n\nA number with a decimal point, then the unit as written here.\n\n| quantity | units |\n| --- | --- |\n");
+        foreach (var dimension in UnitTable.Dimensions)
+            page.Append(
+                $"| {Units.Name(dimension)} | {string.Join(", ", UnitTable.Spellings(dimension).Select(u => $"`{u}`"))} |\n"
+            );
         return page.ToString();
     }
 

@@ -20,6 +20,8 @@ internal static class GasBuilder
                 gas.Report(key, "belongs to model = \"constant\".");
         }
 
+        if (!constant && gas.Has("count_fuel_mass"))
+            gas.Report("count_fuel_mass", "belongs to model = \"constant\".");
         var fuel = fuelTable.Present ? Described(fuelTable) : Known(gas.Text("fuel"));
         if (fuel is null || constant && ConstantKeys.Any(key => double.IsNaN(gas.Number(key))))
             return null;

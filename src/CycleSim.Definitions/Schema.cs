@@ -101,7 +101,7 @@ internal static class Schema
         new(
             "design",
             false,
-            "The point at which the engine is sized. Either altitude or pressure; either isa_offset or temperature; either mass_flow or net_thrust; either T4 or T41.",
+            "The point at which the engine is sized. Either altitude or pressure; either isa_offset or temperature; at most one of relative_humidity and water_air_ratio; either mass_flow or net_thrust; either T4 or T41.",
             [
                 new("altitude", Dimension.Length, "Pressure altitude.", -2000, 32000),
                 new("pressure", Dimension.Pressure, "Ambient static pressure.", 900, 127000),
@@ -109,6 +109,7 @@ internal static class Schema
                 new("isa_offset", Dimension.TemperatureDifference, "Offset from the standard temperature.", -60, 60, Default: "0 K"),
                 new("temperature", Dimension.Temperature, "Outside air temperature.", 170, 340, Example: "\"288 K\""),
                 new("relative_humidity", Dimension.Share, "Of the ambient air.", 0, 1, Default: "0 %", Example: "\"60 %\""),
+                new("water_air_ratio", Dimension.Share, "Water vapour per dry air, kg/kg; give this or relative_humidity.", 0, 0.1, Default: "0", Example: "0.01"),
                 new("mass_flow", Dimension.MassFlow, "Air taken in by the engine.", 0, LeastAllowed: false),
                 new("net_thrust", Dimension.Force, "Net thrust that sets the size.", 0, LeastAllowed: false, Example: "\"28 kN\""),
                 new("bypass_ratio", Dimension.Number, "Bypass flow over core flow; above zero only with a fan.", 0, 30, Default: "0", Example: "5.8"),

@@ -43,7 +43,8 @@ internal sealed class TableReader
     /// <summary>The value in SI, or NaN where the key is absent or was refused.</summary>
     public double Number(string key) => _numbers.GetValueOrDefault(key, double.NaN);
 
-    public double Number(string key, double otherwise) => _numbers.GetValueOrDefault(key, otherwise);
+    /// <summary>The value in SI, the other one where the key is absent, NaN where it was refused.</summary>
+    public double Number(string key, double otherwise) => Has(key) ? Number(key) : otherwise;
 
     public string Text(string key, string otherwise = "") => _texts.GetValueOrDefault(key, otherwise);
 
@@ -139,7 +140,7 @@ internal sealed class TableReader
             case StringValueSyntax { Value: { } text }:
                 if (dimension is Dimension.Number or Dimension.Whole)
                 {
-                    Refuse(entry, $"must be a number without quotes and unit; '{text}' was given. {expected}");
+                    Refuse(entry, $"must be a number without quotes and unit; '{Spelling.OneLine(text)}' was given. {expected}");
                     return null;
                 }
 
@@ -166,7 +167,7 @@ internal sealed class TableReader
             var choice = choices.FirstOrDefault(c => c.Equals(text.Trim(), StringComparison.OrdinalIgnoreCase));
             if (choice is null)
             {
-                Refuse(entry, $"'{text}' is none of {spec.Range}.{Spelling.Suggest(text, choices)}");
+                Refuse(entry, $"'{Spelling.OneLine(text)}' is none of {spec.Range}.{Spelling.Suggest(text, choices)}");
                 return;
             }
 
@@ -183,7 +184,7 @@ internal sealed class TableReader
         else
             Refuse(
                 entry,
-                $"{(entry.Value?.ToString() ?? "").Trim()} is out of range: {spec.Range} was expected. {spec.Meaning}"
+                $"{Spelling.OneLine(entry.Value?.ToString() ?? "")} is out of range: {spec.Range} was expected. {spec.Meaning}"
             );
     }
 

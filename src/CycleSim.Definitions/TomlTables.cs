@@ -1,3 +1,4 @@
+using Tomlyn;
 using Tomlyn.Parsing;
 using Tomlyn.Syntax;
 
@@ -26,18 +27,8 @@ internal static class TomlTables
 {
     public static List<TomlTableNode> Read(string text, string source, List<Problem> problems)
     {
-        var document = SyntaxParser.Parse(text, source, true);
-        foreach (var message in document.Diagnostics)
-            problems.Add(
-                new Problem(
-                    source,
-                    message.Span.Start.Line + 1,
-                    message.Span.Start.Column + 1,
-                    "",
-                    $"not readable as TOML: {Plain(message.Message)}"
-                )
-            );
-
+        if (Parsed(text, source, problems) is not { } document)
+            return [];
         var top = new TomlTableNode("", "", 1);
         var tables = new List<TomlTableNode> { top };
         Fill(top, document.KeyValues);
@@ -70,6 +61,23 @@ internal static class TomlTables
         return tables;
     }
 
+    // What is given twice is left to the checks of the tables, which go on to report the rest of the file too.
+    private static DocumentSyntax? Parsed(string text, string source, List<Problem> problems)
+    {
+        try
+        {
+            var document = SyntaxParser.Parse(text, source, validate: false);
+            if (document.HasErrors)
+                SyntaxErrors.Report(document, text, source, problems);
+            return document.HasErrors ? null : document;
+        }
+        catch (TomlException error)
+        {
+            problems.Add(new Problem(source, 0, 0, "", $"not readable as TOML: {Spelling.OneLine(error.Message)}"));
+            return null;
+        }
+    }
+
     private static void Fill(TomlTableNode node, IEnumerable<KeyValueSyntax> items)
     {
         foreach (var item in items)
@@ -88,7 +96,4 @@ internal static class TomlTables
         string.Concat(
             key.ToString().Trim().Where(c => c != '"' && c != ' ')
         );
-
-    // The parser's messages end in positions of its own and quote whole lines; the first sentence is enough.
-    private static string Plain(string message) => message.Split('\n')[0].Trim();
 }

@@ -52,7 +52,6 @@ public class DefinitionFileTests
             { "mach = 0.80", "", "design.mach", "is missing" },
             { "mach = 0.80", "mach = 3.5", "design.mach", "0 to 3" },
             { "mach = 0.80", "mach = \"0.8\"", "design.mach", "without quotes" },
-            { "mach = 0.80", "mach = 0.80\nmach = 0.81", "", "not readable as TOML" },
             { "altitude = \"35000 ft\"", "altitude = \"35000\"", "design.altitude", "has no unit" },
             { "altitude = \"35000 ft\"", "altitude = 35000", "design.altitude", "needs a unit" },
             { "altitude = \"35000 ft\"", "altitude = \"35000 kg/s\"", "design.altitude", "is a mass flow" },
