@@ -7,6 +7,8 @@ internal static class GasBuilder
 {
     private static readonly string[] ConstantKeys = ["air_cp", "air_gamma", "burnt_cp", "burnt_gamma"];
 
+    private static readonly string[] OptionalConstantKeys = ["count_fuel_mass", "fuel_air_ratio"];
+
     public static GasModel? Build(TableReader gas, TableReader fuelTable)
     {
         if (gas.Has("fuel") && fuelTable.Present)
@@ -20,8 +22,8 @@ internal static class GasBuilder
                 gas.Report(key, "belongs to model = \"constant\".");
         }
 
-        if (!constant && gas.Has("count_fuel_mass"))
-            gas.Report("count_fuel_mass", "belongs to model = \"constant\".");
+        foreach (var key in OptionalConstantKeys.Where(k => !constant && gas.Has(k)))
+            gas.Report(key, "belongs to model = \"constant\".");
         var fuel = fuelTable.Present ? Described(fuelTable) : Known(gas.Text("fuel"));
         if (fuel is null || constant && ConstantKeys.Any(key => double.IsNaN(gas.Number(key))))
             return null;

@@ -171,6 +171,13 @@ public class MistakeTests
                 "gas.count_fuel_mass",
                 "belongs to model"
             },
+            {
+                "fuel = \"Jet A-1\"",
+                "fuel_air_ratio = \"chart\"",
+                "fuel_air_ratio = \"chart\"",
+                "gas.fuel_air_ratio",
+                "belongs to model"
+            },
             // Ratings.
             { "value = \"1500 K\"", "value = 1500", "value = 1500", "rating[3].limit[1].value", "needs a unit" },
             {
