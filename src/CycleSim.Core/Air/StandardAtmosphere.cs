@@ -16,13 +16,24 @@ public static class StandardAtmosphere
     /// <summary>Standard acceleration of free fall, m/s2.</summary>
     public const double Gravity = 9.80665;
 
-    /// <summary>The standard's own gas constant, J/(kmol K), and molar mass of air, kg/kmol; ratio of specific heats.</summary>
+    /// <summary>
+    /// The standard's own gas constant R*, J/(kmol K) (not today's CODATA value), and molar mass of air, kg/kmol; ratio
+    /// of specific heats.
+    /// </summary>
     public const double MolarGasConstant = 8314.32,
         MolarMass = 28.964420,
         Gamma = 1.4;
 
     /// <summary>Gas constant of air in the standard, J/(kg K).</summary>
     public const double GasConstant = MolarGasConstant / MolarMass;
+
+    /// <summary>Sutherland's law in the standard: coefficient, kg/(m s K^0.5), and temperature, K.</summary>
+    public const double SutherlandCoefficient = 1.458e-6,
+        SutherlandTemperature = 110.4;
+
+    /// <summary>Temperatures, K, between which Sutherland's law holds to about 2 per cent.</summary>
+    public const double LowestViscosityTemperature = 170.0,
+        HighestViscosityTemperature = 1900.0;
 
     // Base altitude (m), temperature (K), gradient (K/m); the lowest layer is used below sea level too.
     private static readonly (double Altitude, double Temperature, double Gradient)[] Layers =
@@ -51,16 +62,29 @@ public static class StandardAtmosphere
     }
 
     /// <summary>Density, kg/m3.</summary>
+    /// <exception cref="ArgumentOutOfRangeException">Altitude outside the range.</exception>
     public static double Density(double pressureAltitude) =>
         Pressure(pressureAltitude) / (GasConstant * Temperature(pressureAltitude));
 
     /// <summary>Speed of sound, m/s.</summary>
-    public static double SpeedOfSound(double pressureAltitude) =>
-        Math.Sqrt(Gamma * GasConstant * Temperature(pressureAltitude));
+    /// <exception cref="ArgumentOutOfRangeException">Altitude outside the range.</exception>
+    public static double SpeedOfSound(double pressureAltitude) => Airspeed.SpeedOfSound(Temperature(pressureAltitude));
 
-    /// <summary>Dynamic viscosity of air at a temperature (K), Pa s, by the standard's form of Sutherland's law.</summary>
+    /// <summary>Dynamic viscosity, Pa s, at a pressure altitude on a standard day.</summary>
+    /// <exception cref="ArgumentOutOfRangeException">Altitude outside the range.</exception>
+    public static double ViscosityAtAltitude(double pressureAltitude) => Viscosity(Temperature(pressureAltitude));
+
+    /// <summary>Dynamic viscosity of air, Pa s, at a temperature (K), by Sutherland's law as in the standard.</summary>
+    /// <exception cref="ArgumentOutOfRangeException">Temperature outside 170 to 1900 K.</exception>
     public static double Viscosity(double temperature) =>
-        1.458e-6 * temperature * Math.Sqrt(temperature) / (temperature + 110.4);
+        temperature is >= LowestViscosityTemperature and <= HighestViscosityTemperature
+            ? SutherlandCoefficient * temperature * Math.Sqrt(temperature) / (temperature + SutherlandTemperature)
+            : throw new ArgumentOutOfRangeException(
+                nameof(temperature),
+                $"The viscosity of air is given from {LowestViscosityTemperature:F0} to "
+                    + $"{HighestViscosityTemperature:F0} K; {temperature:F1} K was given. Give the temperature "
+                    + "in kelvin, not as an altitude or in °C."
+            );
 
     /// <summary>Pressure altitude (m) at which the standard has this pressure (Pa).</summary>
     /// <exception cref="ArgumentOutOfRangeException">The pressure belongs to no altitude in the range.</exception>
@@ -70,7 +94,8 @@ public static class StandardAtmosphere
             throw new ArgumentOutOfRangeException(
                 nameof(pressure),
                 $"A static pressure of {pressure:F0} Pa lies outside {Pressure(HighestAltitude):F0} to "
-                    + $"{Pressure(LowestAltitude):F0} Pa, the range of the standard atmosphere used here."
+                    + $"{Pressure(LowestAltitude):F0} Pa, the range of the standard atmosphere used here. Give it in "
+                    + "pascal, absolute."
             );
         var k = Layers.Length - 1;
         while (k > 0 && pressure > BasePressures[k])
@@ -107,12 +132,13 @@ public static class StandardAtmosphere
         return k;
     }
 
-    private static double Checked(double altitude) =>
-        altitude is >= LowestAltitude and <= HighestAltitude
-            ? altitude
+    private static double Checked(double pressureAltitude) =>
+        pressureAltitude is >= LowestAltitude and <= HighestAltitude
+            ? pressureAltitude
             : throw new ArgumentOutOfRangeException(
-                nameof(altitude),
-                $"A pressure altitude of {altitude:F0} m ({altitude / 0.3048:F0} ft) lies outside {LowestAltitude:F0} to "
-                    + $"{HighestAltitude:F0} m, the range of the standard atmosphere used here."
+                nameof(pressureAltitude),
+                $"A pressure altitude of {pressureAltitude:F0} m ({pressureAltitude / 0.3048:F0} ft) lies outside "
+                    + $"{LowestAltitude:F0} to {HighestAltitude:F0} m, the range of the standard atmosphere used here. "
+                    + "Check the altitude and its unit."
             );
 }
