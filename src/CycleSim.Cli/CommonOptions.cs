@@ -14,17 +14,33 @@ internal sealed class CommonOptions
         Description = "An engine that ships with the program, or the path of a definition file.",
     };
 
-    public readonly Option<string?> Altitude = Text("--altitude", "Pressure altitude, for instance \"35000 ft\" or \"1500 m\".");
+    public readonly Option<string?> Altitude = Text(
+        "--altitude",
+        "Pressure altitude, for instance \"35000 ft\" or \"1500 m\"."
+    );
     public readonly Option<string?> Mach = Text("--mach", "Mach number, for instance 0.78.");
-    public readonly Option<string?> TrueAirspeed = Text("--tas", "True airspeed instead of Mach, for instance \"450 kt\".");
-    public readonly Option<string?> CalibratedAirspeed = Text("--cas", "Calibrated airspeed instead of Mach, for instance \"140 kt\".");
+    public readonly Option<string?> TrueAirspeed = Text(
+        "--tas",
+        "True airspeed instead of Mach, for instance \"450 kt\"."
+    );
+    public readonly Option<string?> CalibratedAirspeed = Text(
+        "--cas",
+        "Calibrated airspeed instead of Mach, for instance \"140 kt\"."
+    );
     public readonly Option<string?> Isa = Text("--isa", "Offset from the standard temperature, for instance \"15 K\".");
-    public readonly Option<string?> Temperature = Text("--temperature", "Outside air temperature instead of an offset, for instance \"38 °C\".");
-    public readonly Option<string?> Humidity = Text("--humidity", "Relative humidity, for instance \"60 %\"; dry air without it.");
+    public readonly Option<string?> Temperature = Text(
+        "--temperature",
+        "Outside air temperature instead of an offset, for instance \"38 °C\"."
+    );
+    public readonly Option<string?> Humidity = Text(
+        "--humidity",
+        "Relative humidity, for instance \"60 %\"; dry air without it."
+    );
 
     public readonly Option<string[]> Bleed = new("--bleed")
     {
-        Description = "Air taken by a port of the definition, for instance \"customer-bleed=3 %\" or \"customer-bleed=1.2 kg/s\"; may be repeated.",
+        Description =
+            "Air taken by a port of the definition, for instance \"customer-bleed=3 %\" or \"customer-bleed=1.2 kg/s\"; may be repeated.",
     };
 
     public readonly Option<string[]> Offtake = new("--offtake")
@@ -72,7 +88,9 @@ internal sealed class CommonOptions
     /// <summary>Mach number from whichever of the three speeds is given; zero without any.</summary>
     public double MachOf(ParseResult result, double altitude, double temperature)
     {
-        var given = new[] { Mach, TrueAirspeed, CalibratedAirspeed }.Where(o => result.GetValue(o) is not null).ToList();
+        var given = new[] { Mach, TrueAirspeed, CalibratedAirspeed }
+            .Where(o => result.GetValue(o) is not null)
+            .ToList();
         if (given.Count > 1)
             throw new UsageException($"{given[0].Name} and {given[1].Name} both give the speed; use one of them.");
         return Checked(() =>
@@ -110,7 +128,9 @@ internal sealed class CommonOptions
         var humidity = result.GetValue(Humidity) is { } text ? Share("--humidity", text) : 0.0;
         return humidity is >= 0.0 and <= 1.0
             ? humidity
-            : throw new UsageException($"--humidity must lie between 0 and 100 %; '{result.GetValue(Humidity)}' was given.");
+            : throw new UsageException(
+                $"--humidity must lie between 0 and 100 %; '{result.GetValue(Humidity)}' was given."
+            );
     }
 
     /// <summary>Applies the bleeds and offtakes of the command line to a list of inputs.</summary>

@@ -14,8 +14,14 @@ internal static class FlatRatingCommand
     {
         var common = new CommonOptions();
         var rating = CommonOptions.Text("--rating", "Rating of the definition; its first one without it.");
-        var from = CommonOptions.Text("--from", "Coldest outside temperature of the table, for instance \"-20 °C\"; ISA - 40 K without it.");
-        var to = CommonOptions.Text("--to", "Hottest outside temperature of the table, for instance \"50 °C\"; ISA + 35 K without it.");
+        var from = CommonOptions.Text(
+            "--from",
+            "Coldest outside temperature of the table, for instance \"-20 °C\"; ISA - 40 K without it."
+        );
+        var to = CommonOptions.Text(
+            "--to",
+            "Hottest outside temperature of the table, for instance \"50 °C\"; ISA + 35 K without it."
+        );
         var step = CommonOptions.Text("--step", "Step of the table, for instance \"2 K\"; 5 K without it.");
         var command = new Command(
             "flat-rating",
@@ -50,9 +56,9 @@ internal static class FlatRatingCommand
             );
             var model = new EngineModel(loaded.Engine);
             if (loaded.Engine.Ratings.Count == 0)
-                throw new DefinitionException(
-                    [new Problem(loaded.Source, 0, 0, "", "defines no [[rating]]; add one to work out.")]
-                );
+                throw new DefinitionException([
+                    new Problem(loaded.Source, 0, 0, "", "defines no [[rating]]; add one to work out."),
+                ]);
             var study = FlatRating.Run(
                 model,
                 result.GetValue(rating) ?? loaded.Engine.Ratings[0].Name,
@@ -136,22 +142,15 @@ internal static class FlatRatingCommand
                         d.Temperature(r.OutsideTemperature),
                         d.Difference(r.IsaOffset),
                         .. r.Point is { } p
-                            ? new[]
-                            {
-                                r.Governing,
-                                d.Force(p.NetThrust),
-                                Display.Percent(p.NetThrust / s.FlatThrust),
-                            }
+                            ? new[] { r.Governing, d.Force(p.NetThrust), Display.Percent(p.NetThrust / s.FlatThrust) }
                                 .Concat(p.Spools.Select(k => Display.Percent(k.RelativeSpeed)))
-                                .Concat(
-                                    [
-                                        Display.Fixed(p.EnginePressureRatio, 4),
-                                        d.Temperature(p.T41),
-                                        d.Temperature(p.T45),
-                                        d.FuelFlow(p.FuelFlow),
-                                        d.Sfc(p.Sfc),
-                                    ]
-                                )
+                                .Concat([
+                                    Display.Fixed(p.EnginePressureRatio, 4),
+                                    d.Temperature(p.T41),
+                                    d.Temperature(p.T45),
+                                    d.FuelFlow(p.FuelFlow),
+                                    d.Sfc(p.Sfc),
+                                ])
                             : ["none", .. Enumerable.Repeat("-", 7 + spools)],
                     ]
             ),

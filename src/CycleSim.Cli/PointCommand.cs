@@ -17,16 +17,59 @@ internal static class PointCommand
         var rating = CommonOptions.Text("--rating", "Power of a rating of the definition, for instance take-off.");
         Setting[] settings =
         [
-            new(CommonOptions.Text("--thrust", "Net thrust, for instance \"100 kN\"."), Quantity.NetThrust, Dimension.Force),
-            new(CommonOptions.Text("--fuel-flow", "Fuel flow, for instance \"0.8 kg/s\"."), Quantity.FuelFlow, Dimension.MassFlow),
-            new(CommonOptions.Text("--T4", "Combustor exit temperature, for instance \"1600 K\"."), Quantity.T4, Dimension.Temperature),
-            new(CommonOptions.Text("--T41", "Rotor inlet temperature, for instance \"1550 K\"."), Quantity.T41, Dimension.Temperature),
-            new(CommonOptions.Text("--EGT", "Gas temperature behind the first turbine (station 45), for instance \"850 °C\"."), Quantity.T45, Dimension.Temperature),
-            new(CommonOptions.Text("--N1", "Low-pressure speed over its design value, for instance \"95 %\"."), Quantity.N1, Dimension.Share),
-            new(CommonOptions.Text("--N2", "Speed of the second spool over its design value."), Quantity.N2, Dimension.Share),
-            new(CommonOptions.Text("--N3", "Speed of the third spool over its design value."), Quantity.N3, Dimension.Share),
-            new(CommonOptions.Text("--EPR", "Engine pressure ratio P5/P2, for instance 1.45."), Quantity.Epr, Dimension.Number),
-            new(CommonOptions.Text("--lever", "Lever position between idle and full, for instance \"80 %\"."), Quantity.Lever, Dimension.Share),
+            new(
+                CommonOptions.Text("--thrust", "Net thrust, for instance \"100 kN\"."),
+                Quantity.NetThrust,
+                Dimension.Force
+            ),
+            new(
+                CommonOptions.Text("--fuel-flow", "Fuel flow, for instance \"0.8 kg/s\"."),
+                Quantity.FuelFlow,
+                Dimension.MassFlow
+            ),
+            new(
+                CommonOptions.Text("--T4", "Combustor exit temperature, for instance \"1600 K\"."),
+                Quantity.T4,
+                Dimension.Temperature
+            ),
+            new(
+                CommonOptions.Text("--T41", "Rotor inlet temperature, for instance \"1550 K\"."),
+                Quantity.T41,
+                Dimension.Temperature
+            ),
+            new(
+                CommonOptions.Text(
+                    "--EGT",
+                    "Gas temperature behind the first turbine (station 45), for instance \"850 °C\"."
+                ),
+                Quantity.T45,
+                Dimension.Temperature
+            ),
+            new(
+                CommonOptions.Text("--N1", "Low-pressure speed over its design value, for instance \"95 %\"."),
+                Quantity.N1,
+                Dimension.Share
+            ),
+            new(
+                CommonOptions.Text("--N2", "Speed of the second spool over its design value."),
+                Quantity.N2,
+                Dimension.Share
+            ),
+            new(
+                CommonOptions.Text("--N3", "Speed of the third spool over its design value."),
+                Quantity.N3,
+                Dimension.Share
+            ),
+            new(
+                CommonOptions.Text("--EPR", "Engine pressure ratio P5/P2, for instance 1.45."),
+                Quantity.Epr,
+                Dimension.Number
+            ),
+            new(
+                CommonOptions.Text("--lever", "Lever position between idle and full, for instance \"80 %\"."),
+                Quantity.Lever,
+                Dimension.Share
+            ),
         ];
         var command = new Command(
             "point",
@@ -61,7 +104,10 @@ internal static class PointCommand
                         ? "say at what power: --design, --rating, --thrust, --fuel-flow, --T4, --T41, --EGT, --N1, --N2, --N3, --EPR or --lever."
                         : $"{string.Join(" and ", given)} each set the power; use one of them."
                 );
-            if (result.GetValue(design) && (result.GetValue(common.Altitude) is not null || result.GetValue(common.Mach) is not null))
+            if (
+                result.GetValue(design)
+                && (result.GetValue(common.Altitude) is not null || result.GetValue(common.Mach) is not null)
+            )
                 throw new UsageException("--design is the point of the definition; it takes no altitude or speed.");
 
             var loaded = EngineLibrary.Load(result.GetRequiredValue(common.Engine));

@@ -18,97 +18,142 @@ internal static class PointLayout
         Layout.Line($"power set by {Setting(p.Setting, d)}");
         Layout.Line();
         Layout.Pairs(
-            ("net thrust", $"{d.Force(p.NetThrust)} {d.ForceUnit}   (gross {d.Force(p.GrossThrust)}, ram drag {d.Force(p.RamDrag)})"),
-            ("fuel flow", $"{d.FuelFlow(p.FuelFlow)} {d.FuelFlowUnit}   (fuel-air ratio {Display.Fixed(p.FuelAirRatio, 5)})"),
+            (
+                "net thrust",
+                $"{d.Force(p.NetThrust)} {d.ForceUnit}   (gross {d.Force(p.GrossThrust)}, ram drag {d.Force(p.RamDrag)})"
+            ),
+            (
+                "fuel flow",
+                $"{d.FuelFlow(p.FuelFlow)} {d.FuelFlowUnit}   (fuel-air ratio {Display.Fixed(p.FuelAirRatio, 5)})"
+            ),
             ("SFC", $"{d.Sfc(p.Sfc)} {d.SfcUnit}"),
             ("bypass ratio", Display.Fixed(p.BypassRatio, 3)),
-            ("pressure ratios", $"overall P3/P2 {Display.Fixed(p.OverallPressureRatio, 3)}, engine P5/P2 {Display.Fixed(p.EnginePressureRatio, 4)}"),
-            ("temperatures", $"T4 {d.Temperature(p.T4)}, T41 {d.Temperature(p.T41)}, T45 {d.Temperature(p.T45)} {d.TemperatureUnit}"),
+            (
+                "pressure ratios",
+                $"overall P3/P2 {Display.Fixed(p.OverallPressureRatio, 3)}, engine P5/P2 {Display.Fixed(p.EnginePressureRatio, 4)}"
+            ),
+            (
+                "temperatures",
+                $"T4 {d.Temperature(p.T4)}, T41 {d.Temperature(p.T41)}, T45 {d.Temperature(p.T45)} {d.TemperatureUnit}"
+            ),
             ("dissociation", DissociationNote(p, d)),
             ("lever", $"{Display.Percent(p.LeverPosition, 1)} %"),
-            ("efficiencies", $"thermal {Display.Percent(p.ThermalEfficiency, 1)}, propulsive {Display.Percent(p.PropulsiveEfficiency, 1)}, overall {Display.Percent(p.OverallEfficiency, 1)} %")
+            (
+                "efficiencies",
+                $"thermal {Display.Percent(p.ThermalEfficiency, 1)}, propulsive {Display.Percent(p.PropulsiveEfficiency, 1)}, overall {Display.Percent(p.OverallEfficiency, 1)} %"
+            )
         );
         Layout.Line();
         Layout.Table(
             "Stations",
-            ["station", "plane", $"W {d.FlowUnit}", $"Tt {d.TemperatureUnit}", $"Pt {d.PressureUnit}", "fuel-air ratio"],
-            p.Stations.Select(s => new[]
-            {
-                s.Number,
-                s.Plane,
-                d.Flow(s.MassFlow),
-                d.Temperature(s.TotalTemperature),
-                d.Pressure(s.TotalPressure),
-                Display.Fixed(s.FuelAirRatio, 5),
-            }),
+            [
+                "station",
+                "plane",
+                $"W {d.FlowUnit}",
+                $"Tt {d.TemperatureUnit}",
+                $"Pt {d.PressureUnit}",
+                "fuel-air ratio",
+            ],
+            p.Stations.Select(s =>
+                new[]
+                {
+                    s.Number,
+                    s.Plane,
+                    d.Flow(s.MassFlow),
+                    d.Temperature(s.TotalTemperature),
+                    d.Pressure(s.TotalPressure),
+                    Display.Fixed(s.FuelAirRatio, 5),
+                }
+            ),
             left: 2
         );
         Layout.Table(
             "Compressors (surge margin as pressure ratio to the surge line at constant flow, and as PR/W at constant speed)",
-            ["", "PR", "isentropic %", "polytropic %", $"corrected {d.FlowUnit}", "corrected speed %", $"power {d.PowerUnit}", "margin, flow %", "margin, speed %"],
-            p.Compressors.Select(c => new[]
-            {
-                c.Name,
-                Display.Fixed(c.PressureRatio, 4),
-                Display.Percent(c.IsentropicEfficiency),
-                Display.Percent(c.PolytropicEfficiency),
-                d.Flow(c.CorrectedFlow),
-                Display.Percent(c.RelativeCorrectedSpeed),
-                d.Power(c.Power),
-                Display.Percent(c.SurgeMarginConstantFlow, 1),
-                Display.Percent(c.SurgeMarginConstantSpeed, 1),
-            })
+            [
+                "",
+                "PR",
+                "isentropic %",
+                "polytropic %",
+                $"corrected {d.FlowUnit}",
+                "corrected speed %",
+                $"power {d.PowerUnit}",
+                "margin, flow %",
+                "margin, speed %",
+            ],
+            p.Compressors.Select(c =>
+                new[]
+                {
+                    c.Name,
+                    Display.Fixed(c.PressureRatio, 4),
+                    Display.Percent(c.IsentropicEfficiency),
+                    Display.Percent(c.PolytropicEfficiency),
+                    d.Flow(c.CorrectedFlow),
+                    Display.Percent(c.RelativeCorrectedSpeed),
+                    d.Power(c.Power),
+                    Display.Percent(c.SurgeMarginConstantFlow, 1),
+                    Display.Percent(c.SurgeMarginConstantSpeed, 1),
+                }
+            )
         );
         Layout.Table(
             "Turbines",
             ["", "expansion", "isentropic %", $"work {d.WorkUnit}", $"power {d.PowerUnit}", "choked"],
-            p.Turbines.Select(t => new[]
-            {
-                t.Name,
-                Display.Fixed(t.ExpansionRatio, 4),
-                Display.Percent(t.IsentropicEfficiency),
-                d.Work(t.SpecificWork),
-                d.Power(t.Power),
-                t.Choked ? "yes" : "no",
-            })
+            p.Turbines.Select(t =>
+                new[]
+                {
+                    t.Name,
+                    Display.Fixed(t.ExpansionRatio, 4),
+                    Display.Percent(t.IsentropicEfficiency),
+                    d.Work(t.SpecificWork),
+                    d.Power(t.Power),
+                    t.Choked ? "yes" : "no",
+                }
+            )
         );
         Layout.Table(
             "Spools",
             ["", "speed %", "speed rpm", $"offtake {d.PowerUnit}"],
-            p.Spools.Select(s => new[]
-            {
-                s.Name,
-                Display.Percent(s.RelativeSpeed),
-                Display.Fixed(s.Rpm, 0),
-                d.Power(s.Offtake),
-            })
+            p.Spools.Select(s =>
+                new[] { s.Name, Display.Percent(s.RelativeSpeed), Display.Fixed(s.Rpm, 0), d.Power(s.Offtake) }
+            )
         );
         Layout.Table(
             "Nozzles",
-            ["", "P/Pamb", "choked", $"exit {d.SpeedUnit}", $"effective throat {d.AreaUnit}", $"gross thrust {d.ForceUnit}"],
-            p.Nozzles.Select(n => new[]
-            {
-                n.Name,
-                Display.Fixed(n.PressureRatio, 4),
-                n.Choked ? "yes" : "no",
-                d.Speed(n.ExitSpeed),
-                d.Area(n.EffectiveArea),
-                d.Force(n.GrossThrust),
-            })
+            [
+                "",
+                "P/Pamb",
+                "choked",
+                $"exit {d.SpeedUnit}",
+                $"effective throat {d.AreaUnit}",
+                $"gross thrust {d.ForceUnit}",
+            ],
+            p.Nozzles.Select(n =>
+                new[]
+                {
+                    n.Name,
+                    Display.Fixed(n.PressureRatio, 4),
+                    n.Choked ? "yes" : "no",
+                    d.Speed(n.ExitSpeed),
+                    d.Area(n.EffectiveArea),
+                    d.Force(n.GrossThrust),
+                }
+            )
         );
         if (p.Air.Count > 0)
             Layout.Table(
                 "Air taken",
                 ["", "from", "to", d.FlowUnit, $"Tt {d.TemperatureUnit}", $"Pt {d.PressureUnit}"],
-                p.Air.Select(a => new[]
-                {
-                    a.Name,
-                    a.From,
-                    a.To,
-                    d.Flow(a.MassFlow),
-                    d.Temperature(a.TotalTemperature),
-                    d.Pressure(a.TotalPressure),
-                }),
+                p.Air.Select(a =>
+                    new[]
+                    {
+                        a.Name,
+                        a.From,
+                        a.To,
+                        d.Flow(a.MassFlow),
+                        d.Temperature(a.TotalTemperature),
+                        d.Pressure(a.TotalPressure),
+                    }
+                ),
                 left: 3
             );
         Layout.Line(

@@ -44,7 +44,10 @@ internal sealed class DefinitionBuilder(List<TomlTableNode> nodes, string source
             foreach (var useless in new[] { bypassNozzle, bypassDuct, mixer }.Where(t => t.Present))
                 useless.Report("", "has no fan to serve; drop this table or add [fan].");
         if (mixer.Present && bypassNozzle.Present)
-            bypassNozzle.Report("", "is not needed beside [mixer]: the mixed stream leaves by the core nozzle. Drop one of the two.");
+            bypassNozzle.Report(
+                "",
+                "is not needed beside [mixer]: the mixed stream leaves by the core nozzle. Drop one of the two."
+            );
         if (control.Number("idle_speed", 0.3) >= control.Number("full_speed", 1.05))
             control.Report("idle_speed", "must lie below full_speed.");
         var builtRatings = ratings.Select(r => RatingBuilder.Build(r, spools.Count, source, problems)).ToList();

@@ -28,11 +28,14 @@ public static class DefinitionFile
                 throw Whole(path, $"is {info.Length / 1024} kB long; a definition file is a text of a few kilobytes.");
             text = File.ReadAllText(path, new UTF8Encoding(false, true));
         }
-        catch (Exception error) when (error is IOException
-                or UnauthorizedAccessException
-                or DecoderFallbackException
-                or ArgumentException
-                or NotSupportedException)
+        catch (Exception error)
+            when (error
+                    is IOException
+                        or UnauthorizedAccessException
+                        or DecoderFallbackException
+                        or ArgumentException
+                        or NotSupportedException
+            )
         {
             throw Whole(
                 path,
@@ -59,5 +62,6 @@ public static class DefinitionFile
         );
     }
 
-    private static DefinitionException Whole(string path, string message) => new([new Problem(path, 0, 0, "", message)]);
+    private static DefinitionException Whole(string path, string message) =>
+        new([new Problem(path, 0, 0, "", message)]);
 }

@@ -41,7 +41,9 @@ public static class DefinitionReference
                 );
         }
 
-        page.Append("\n## Units\n\nA number with a decimal point, then the unit as written here.\n\n| quantity | units |\n| --- | --- |\n");
+        page.Append(
+            "\n## Units\n\nA number with a decimal point, then the unit as written here.\n\n| quantity | units |\n| --- | --- |\n"
+        );
         foreach (var dimension in UnitTable.Dimensions)
             page.Append(
                 $"| {Units.Name(dimension)} | {string.Join(", ", UnitTable.Spellings(dimension).Select(u => $"`{u}`"))} |\n"

@@ -37,7 +37,10 @@ internal sealed record KeySpec(
 /// <summary>One table of a definition file.</summary>
 internal sealed record TableSpec(string Name, bool Repeats, string Meaning, KeySpec[] Keys, bool Required = false)
 {
-    public string Header => Name.Length == 0 ? "(top)" : Repeats ? $"[[{Name}]]" : $"[{Name}]";
+    public string Header =>
+        Name.Length == 0 ? "(top)"
+        : Repeats ? $"[[{Name}]]"
+        : $"[{Name}]";
 }
 
 /// <summary>Every table and key that a definition file may hold.</summary>
@@ -67,8 +70,19 @@ internal static class Schema
             false,
             "At the head of the file.",
             [
-                new("name", Dimension.Text, "Short name, used on the command line and in outputs.", Required: true, Example: "\"velda-27\""),
-                new("description", Dimension.Text, "One line on what the engine is.", Example: "\"Invented twin-spool turbofan\""),
+                new(
+                    "name",
+                    Dimension.Text,
+                    "Short name, used on the command line and in outputs.",
+                    Required: true,
+                    Example: "\"velda-27\""
+                ),
+                new(
+                    "description",
+                    Dimension.Text,
+                    "One line on what the engine is.",
+                    Example: "\"Invented twin-spool turbofan\""
+                ),
             ],
             true
         ),
@@ -77,14 +91,60 @@ internal static class Schema
             false,
             "The working fluid and the fuel.",
             [
-                new("model", Dimension.Text, "Thermally perfect mixture with NASA Glenn coefficients, or constant specific heats as in textbooks.", Choices: ["thermally perfect", "constant"], Default: "thermally perfect"),
-                new("fuel", Dimension.Text, "A fuel known by name; a [fuel] table describes any other.", Choices: Fuels, Default: "Jet A-1"),
+                new(
+                    "model",
+                    Dimension.Text,
+                    "Thermally perfect mixture with NASA Glenn coefficients, or constant specific heats as in textbooks.",
+                    Choices: ["thermally perfect", "constant"],
+                    Default: "thermally perfect"
+                ),
+                new(
+                    "fuel",
+                    Dimension.Text,
+                    "A fuel known by name; a [fuel] table describes any other.",
+                    Choices: Fuels,
+                    Default: "Jet A-1"
+                ),
                 new("air_cp", Dimension.SpecificHeat, "Constant gas: specific heat of air.", 0, LeastAllowed: false),
-                new("air_gamma", Dimension.Number, "Constant gas: ratio of specific heats of air.", 1, 2, LeastAllowed: false, Example: "1.4"),
-                new("burnt_cp", Dimension.SpecificHeat, "Constant gas: specific heat of burnt gas.", 0, LeastAllowed: false, Example: "\"1148 J/(kg K)\""),
-                new("burnt_gamma", Dimension.Number, "Constant gas: ratio of specific heats of burnt gas.", 1, 2, LeastAllowed: false, Example: "1.333"),
-                new("fuel_air_ratio", Dimension.Text, "Constant gas: read off the chart of the real gas, or from a heat balance with the constant specific heats, enthalpies counted from 0 K.", Choices: ["chart", "heat balance"], Default: "chart"),
-                new("count_fuel_mass", Dimension.Switch, "Constant gas: whether the fuel's mass joins the stream.", Default: "false"),
+                new(
+                    "air_gamma",
+                    Dimension.Number,
+                    "Constant gas: ratio of specific heats of air.",
+                    1,
+                    2,
+                    LeastAllowed: false,
+                    Example: "1.4"
+                ),
+                new(
+                    "burnt_cp",
+                    Dimension.SpecificHeat,
+                    "Constant gas: specific heat of burnt gas.",
+                    0,
+                    LeastAllowed: false,
+                    Example: "\"1148 J/(kg K)\""
+                ),
+                new(
+                    "burnt_gamma",
+                    Dimension.Number,
+                    "Constant gas: ratio of specific heats of burnt gas.",
+                    1,
+                    2,
+                    LeastAllowed: false,
+                    Example: "1.333"
+                ),
+                new(
+                    "fuel_air_ratio",
+                    Dimension.Text,
+                    "Constant gas: read off the chart of the real gas, or from a heat balance with the constant specific heats, enthalpies counted from 0 K.",
+                    Choices: ["chart", "heat balance"],
+                    Default: "chart"
+                ),
+                new(
+                    "count_fuel_mass",
+                    Dimension.Switch,
+                    "Constant gas: whether the fuel's mass joins the stream.",
+                    Default: "false"
+                ),
             ]
         ),
         new(
@@ -94,8 +154,24 @@ internal static class Schema
             [
                 new("name", Dimension.Text, "As shown.", Required: true, Example: "\"test blend\""),
                 new("carbon", Dimension.Number, "Carbon atoms a molecule.", 0, 100, Required: true, Example: "12"),
-                new("hydrogen", Dimension.Number, "Hydrogen atoms a molecule.", 0, 200, LeastAllowed: false, Required: true, Example: "23"),
-                new("heating_value", Dimension.SpecificEnergy, "Lower heating value at 25 °C.", 1e6, 2e8, Required: true),
+                new(
+                    "hydrogen",
+                    Dimension.Number,
+                    "Hydrogen atoms a molecule.",
+                    0,
+                    200,
+                    LeastAllowed: false,
+                    Required: true,
+                    Example: "23"
+                ),
+                new(
+                    "heating_value",
+                    Dimension.SpecificEnergy,
+                    "Lower heating value at 25 °C.",
+                    1e6,
+                    2e8,
+                    Required: true
+                ),
             ]
         ),
         new(
@@ -106,15 +182,60 @@ internal static class Schema
                 new("altitude", Dimension.Length, "Pressure altitude.", -2000, 32000),
                 new("pressure", Dimension.Pressure, "Ambient static pressure.", 900, 127000),
                 new("mach", Dimension.Number, "Flight Mach number.", 0, 3, Required: true),
-                new("isa_offset", Dimension.TemperatureDifference, "Offset from the standard temperature.", -60, 60, Default: "0 K"),
+                new(
+                    "isa_offset",
+                    Dimension.TemperatureDifference,
+                    "Offset from the standard temperature.",
+                    -60,
+                    60,
+                    Default: "0 K"
+                ),
                 new("temperature", Dimension.Temperature, "Outside air temperature.", 170, 340, Example: "\"288 K\""),
-                new("relative_humidity", Dimension.Share, "Of the ambient air.", 0, 1, Default: "0 %", Example: "\"60 %\""),
-                new("water_air_ratio", Dimension.Share, "Water vapour per dry air, kg/kg; give this or relative_humidity.", 0, 0.1, Default: "0", Example: "0.01"),
+                new(
+                    "relative_humidity",
+                    Dimension.Share,
+                    "Of the ambient air.",
+                    0,
+                    1,
+                    Default: "0 %",
+                    Example: "\"60 %\""
+                ),
+                new(
+                    "water_air_ratio",
+                    Dimension.Share,
+                    "Water vapour per dry air, kg/kg; give this or relative_humidity.",
+                    0,
+                    0.1,
+                    Default: "0",
+                    Example: "0.01"
+                ),
                 new("mass_flow", Dimension.MassFlow, "Air taken in by the engine.", 0, LeastAllowed: false),
-                new("net_thrust", Dimension.Force, "Net thrust that sets the size.", 0, LeastAllowed: false, Example: "\"28 kN\""),
-                new("bypass_ratio", Dimension.Number, "Bypass flow over core flow; above zero only with a fan.", 0, 30, Default: "0", Example: "5.8"),
+                new(
+                    "net_thrust",
+                    Dimension.Force,
+                    "Net thrust that sets the size.",
+                    0,
+                    LeastAllowed: false,
+                    Example: "\"28 kN\""
+                ),
+                new(
+                    "bypass_ratio",
+                    Dimension.Number,
+                    "Bypass flow over core flow; above zero only with a fan.",
+                    0,
+                    30,
+                    Default: "0",
+                    Example: "5.8"
+                ),
                 new("T4", Dimension.Temperature, "Combustor exit total temperature.", 600, 2500),
-                new("T41", Dimension.Temperature, "Total temperature at the first turbine's rotor, vane cooling mixed in.", 600, 2500, Example: "\"1500 K\""),
+                new(
+                    "T41",
+                    Dimension.Temperature,
+                    "Total temperature at the first turbine's rotor, vane cooling mixed in.",
+                    600,
+                    2500,
+                    Example: "\"1500 K\""
+                ),
             ],
             true
         ),
@@ -123,8 +244,24 @@ internal static class Schema
             false,
             "Air inlet. At most one of the two keys.",
             [
-                new("pressure_recovery", Dimension.Share, "Total pressure behind over ahead, below Mach 1; beyond, the standard shock recovery multiplies it.", 0.5, 1, Default: "1", Example: "0.995"),
-                new("ram_efficiency", Dimension.Share, "Share of the ram energy that turns into pressure.", 0, 1, LeastAllowed: false, Example: "0.93"),
+                new(
+                    "pressure_recovery",
+                    Dimension.Share,
+                    "Total pressure behind over ahead, below Mach 1; beyond, the standard shock recovery multiplies it.",
+                    0.5,
+                    1,
+                    Default: "1",
+                    Example: "0.995"
+                ),
+                new(
+                    "ram_efficiency",
+                    Dimension.Share,
+                    "Share of the ram energy that turns into pressure.",
+                    0,
+                    1,
+                    LeastAllowed: false,
+                    Example: "0.93"
+                ),
             ]
         ),
         new(
@@ -133,13 +270,73 @@ internal static class Schema
             "The compressor that bypass and core stream share. Absent in a turbojet.",
             [
                 new("spool", Dimension.Text, "Spool that turns it.", Required: true, Example: "\"low\""),
-                new("pressure_ratio", Dimension.Number, "Of the bypass stream, P13/P2.", 1, 5, LeastAllowed: false, Required: true, Example: "1.66"),
-                new("isentropic_efficiency", Dimension.Share, "Of the bypass stream. Give this or the polytropic one.", 0, 1, LeastAllowed: false, Example: "0.90"),
-                new("polytropic_efficiency", Dimension.Share, "Of the bypass stream.", 0, 1, LeastAllowed: false, Example: "0.905"),
-                new("hub_pressure_ratio", Dimension.Number, "Of the core stream, P21/P2; 1 for a fan behind the core.", 1, 5, Default: "pressure_ratio", Example: "1.50"),
-                new("hub_isentropic_efficiency", Dimension.Share, "Of the core stream.", 0, 1, LeastAllowed: false, Default: "as the bypass stream", Example: "0.90"),
-                new("hub_polytropic_efficiency", Dimension.Share, "Of the core stream.", 0, 1, LeastAllowed: false, Default: "as the bypass stream", Example: "0.91"),
-                new("gear_ratio", Dimension.Number, "Fan speed over the speed of its spool, below 1 behind a reduction gear.", 0, 1, LeastAllowed: false, Default: "1", Example: "0.4"),
+                new(
+                    "pressure_ratio",
+                    Dimension.Number,
+                    "Of the bypass stream, P13/P2.",
+                    1,
+                    5,
+                    LeastAllowed: false,
+                    Required: true,
+                    Example: "1.66"
+                ),
+                new(
+                    "isentropic_efficiency",
+                    Dimension.Share,
+                    "Of the bypass stream. Give this or the polytropic one.",
+                    0,
+                    1,
+                    LeastAllowed: false,
+                    Example: "0.90"
+                ),
+                new(
+                    "polytropic_efficiency",
+                    Dimension.Share,
+                    "Of the bypass stream.",
+                    0,
+                    1,
+                    LeastAllowed: false,
+                    Example: "0.905"
+                ),
+                new(
+                    "hub_pressure_ratio",
+                    Dimension.Number,
+                    "Of the core stream, P21/P2; 1 for a fan behind the core.",
+                    1,
+                    5,
+                    Default: "pressure_ratio",
+                    Example: "1.50"
+                ),
+                new(
+                    "hub_isentropic_efficiency",
+                    Dimension.Share,
+                    "Of the core stream.",
+                    0,
+                    1,
+                    LeastAllowed: false,
+                    Default: "as the bypass stream",
+                    Example: "0.90"
+                ),
+                new(
+                    "hub_polytropic_efficiency",
+                    Dimension.Share,
+                    "Of the core stream.",
+                    0,
+                    1,
+                    LeastAllowed: false,
+                    Default: "as the bypass stream",
+                    Example: "0.91"
+                ),
+                new(
+                    "gear_ratio",
+                    Dimension.Number,
+                    "Fan speed over the speed of its spool, below 1 behind a reduction gear.",
+                    0,
+                    1,
+                    LeastAllowed: false,
+                    Default: "1",
+                    Example: "0.4"
+                ),
             ]
         ),
         new(
@@ -149,10 +346,44 @@ internal static class Schema
             [
                 new("name", Dimension.Text, "Its name; [[air]] refers to it.", Required: true, Example: "\"hpc\""),
                 new("spool", Dimension.Text, "Spool that turns it.", Required: true, Example: "\"high\""),
-                new("pressure_ratio", Dimension.Number, "At the design point.", 1, 60, LeastAllowed: false, Required: true, Example: "12.0"),
-                new("isentropic_efficiency", Dimension.Share, "At the design point. Give this or the polytropic one.", 0, 1, LeastAllowed: false, Example: "0.86"),
-                new("polytropic_efficiency", Dimension.Share, "At the design point.", 0, 1, LeastAllowed: false, Example: "0.905"),
-                new("inlet_duct_loss", Dimension.Share, "Total-pressure loss of the duct ahead at the design point.", 0, 0.5, MostAllowed: false, Default: "0", Example: "\"1 %\""),
+                new(
+                    "pressure_ratio",
+                    Dimension.Number,
+                    "At the design point.",
+                    1,
+                    60,
+                    LeastAllowed: false,
+                    Required: true,
+                    Example: "12.0"
+                ),
+                new(
+                    "isentropic_efficiency",
+                    Dimension.Share,
+                    "At the design point. Give this or the polytropic one.",
+                    0,
+                    1,
+                    LeastAllowed: false,
+                    Example: "0.86"
+                ),
+                new(
+                    "polytropic_efficiency",
+                    Dimension.Share,
+                    "At the design point.",
+                    0,
+                    1,
+                    LeastAllowed: false,
+                    Example: "0.905"
+                ),
+                new(
+                    "inlet_duct_loss",
+                    Dimension.Share,
+                    "Total-pressure loss of the duct ahead at the design point.",
+                    0,
+                    0.5,
+                    MostAllowed: false,
+                    Default: "0",
+                    Example: "\"1 %\""
+                ),
             ],
             true
         ),
@@ -161,8 +392,25 @@ internal static class Schema
             false,
             "The combustor.",
             [
-                new("pressure_loss", Dimension.Share, "Total-pressure loss at the design point.", 0, 0.5, MostAllowed: false, Default: "0", Example: "\"4.5 %\""),
-                new("efficiency", Dimension.Share, "Heat released over heat in the fuel.", 0.5, 1, Default: "1", Example: "0.999"),
+                new(
+                    "pressure_loss",
+                    Dimension.Share,
+                    "Total-pressure loss at the design point.",
+                    0,
+                    0.5,
+                    MostAllowed: false,
+                    Default: "0",
+                    Example: "\"4.5 %\""
+                ),
+                new(
+                    "efficiency",
+                    Dimension.Share,
+                    "Heat released over heat in the fuel.",
+                    0.5,
+                    1,
+                    Default: "1",
+                    Example: "0.999"
+                ),
             ]
         ),
         new(
@@ -172,12 +420,61 @@ internal static class Schema
             [
                 new("name", Dimension.Text, "Its name; [[air]] refers to it.", Required: true, Example: "\"hpt\""),
                 new("spool", Dimension.Text, "Spool that it turns.", Required: true, Example: "\"high\""),
-                new("isentropic_efficiency", Dimension.Share, "At the design point. Give this or the polytropic one.", 0, 1, LeastAllowed: false, Example: "0.89"),
-                new("polytropic_efficiency", Dimension.Share, "At the design point.", 0, 1, LeastAllowed: false, Example: "0.88"),
-                new("inlet_duct_loss", Dimension.Share, "Total-pressure loss of the duct ahead at the design point.", 0, 0.5, MostAllowed: false, Default: "0", Example: "\"1 %\""),
-                new("stages", Dimension.Whole, "Number of stages; sets the expansion ratio at which it chokes.", 1, 12, Default: "1", Example: "4"),
-                new("choking_ratio", Dimension.Number, "Expansion ratio beyond which the capacity no longer grows.", 1.1, 50, Default: "1.9 stages^0.55", Example: "2.2"),
-                new("best_velocity_ratio", Dimension.Number, "Blade speed over spouting speed of best efficiency, over that of the design point.", 0.5, 2, Default: "1.08", Example: "1.08"),
+                new(
+                    "isentropic_efficiency",
+                    Dimension.Share,
+                    "At the design point. Give this or the polytropic one.",
+                    0,
+                    1,
+                    LeastAllowed: false,
+                    Example: "0.89"
+                ),
+                new(
+                    "polytropic_efficiency",
+                    Dimension.Share,
+                    "At the design point.",
+                    0,
+                    1,
+                    LeastAllowed: false,
+                    Example: "0.88"
+                ),
+                new(
+                    "inlet_duct_loss",
+                    Dimension.Share,
+                    "Total-pressure loss of the duct ahead at the design point.",
+                    0,
+                    0.5,
+                    MostAllowed: false,
+                    Default: "0",
+                    Example: "\"1 %\""
+                ),
+                new(
+                    "stages",
+                    Dimension.Whole,
+                    "Number of stages; sets the expansion ratio at which it chokes.",
+                    1,
+                    12,
+                    Default: "1",
+                    Example: "4"
+                ),
+                new(
+                    "choking_ratio",
+                    Dimension.Number,
+                    "Expansion ratio beyond which the capacity no longer grows.",
+                    1.1,
+                    50,
+                    Default: "1.9 stages^0.55",
+                    Example: "2.2"
+                ),
+                new(
+                    "best_velocity_ratio",
+                    Dimension.Number,
+                    "Blade speed over spouting speed of best efficiency, over that of the design point.",
+                    0.5,
+                    2,
+                    Default: "1.08",
+                    Example: "1.08"
+                ),
             ],
             true
         ),
@@ -186,9 +483,29 @@ internal static class Schema
             true,
             "A shaft, the low-pressure one first.",
             [
-                new("name", Dimension.Text, "Its name; fan, compressors and turbines refer to it.", Required: true, Example: "\"low\""),
-                new("speed", Dimension.RotationalSpeed, "At the design point; speeds are shown in per cent alone without it.", 0, LeastAllowed: false),
-                new("mechanical_efficiency", Dimension.Share, "Power that reaches compressors and offtake over the turbine's.", 0.5, 1, Default: "1", Example: "0.995"),
+                new(
+                    "name",
+                    Dimension.Text,
+                    "Its name; fan, compressors and turbines refer to it.",
+                    Required: true,
+                    Example: "\"low\""
+                ),
+                new(
+                    "speed",
+                    Dimension.RotationalSpeed,
+                    "At the design point; speeds are shown in per cent alone without it.",
+                    0,
+                    LeastAllowed: false
+                ),
+                new(
+                    "mechanical_efficiency",
+                    Dimension.Share,
+                    "Power that reaches compressors and offtake over the turbine's.",
+                    0.5,
+                    1,
+                    Default: "1",
+                    Example: "0.995"
+                ),
                 new("power_offtake", Dimension.Power, "For accessories and aircraft.", 0, Default: "0 kW"),
             ],
             true
@@ -198,14 +515,65 @@ internal static class Schema
             true,
             "Air taken from a compressor: cooling, customer bleed, handling bleed, leakage.",
             [
-                new("name", Dimension.Text, "Its name in the ledger and on the command line.", Required: true, Example: "\"customer-bleed\""),
+                new(
+                    "name",
+                    Dimension.Text,
+                    "Its name in the ledger and on the command line.",
+                    Required: true,
+                    Example: "\"customer-bleed\""
+                ),
                 new("from", Dimension.Text, "Compressor that it comes from.", Required: true, Example: "\"hpc\""),
-                new("work_fraction", Dimension.Share, "Share of the compressor's enthalpy rise done on it before it leaves.", 0, 1, Default: "1", Example: "0.6"),
-                new("to", Dimension.Text, "\"overboard\", \"bypass duct\", \"<turbine> vane\" (mixes ahead of the rotor and does work) or \"<turbine> rotor\" (mixes behind it).", Required: true, Example: "\"hpt vane\""),
-                new("fraction", Dimension.Share, "Share of the compressor's inlet flow.", 0, 1, MostAllowed: false, Default: "0", Example: "\"7 %\""),
-                new("flow", Dimension.MassFlow, "Flow on top of the share.", 0, Default: "0 kg/s", Example: "\"0.5 kg/s\""),
-                new("open_below", Dimension.Number, "Valve: the share is taken in full below this relative corrected speed of its compressor ...", 0, 2, Example: "0.70"),
-                new("shut_above", Dimension.Number, "... and not at all above this one.", 0, 2, LeastAllowed: false, Example: "0.92"),
+                new(
+                    "work_fraction",
+                    Dimension.Share,
+                    "Share of the compressor's enthalpy rise done on it before it leaves.",
+                    0,
+                    1,
+                    Default: "1",
+                    Example: "0.6"
+                ),
+                new(
+                    "to",
+                    Dimension.Text,
+                    "\"overboard\", \"bypass duct\", \"<turbine> vane\" (mixes ahead of the rotor and does work) or \"<turbine> rotor\" (mixes behind it).",
+                    Required: true,
+                    Example: "\"hpt vane\""
+                ),
+                new(
+                    "fraction",
+                    Dimension.Share,
+                    "Share of the compressor's inlet flow.",
+                    0,
+                    1,
+                    MostAllowed: false,
+                    Default: "0",
+                    Example: "\"7 %\""
+                ),
+                new(
+                    "flow",
+                    Dimension.MassFlow,
+                    "Flow on top of the share.",
+                    0,
+                    Default: "0 kg/s",
+                    Example: "\"0.5 kg/s\""
+                ),
+                new(
+                    "open_below",
+                    Dimension.Number,
+                    "Valve: the share is taken in full below this relative corrected speed of its compressor ...",
+                    0,
+                    2,
+                    Example: "0.70"
+                ),
+                new(
+                    "shut_above",
+                    Dimension.Number,
+                    "... and not at all above this one.",
+                    0,
+                    2,
+                    LeastAllowed: false,
+                    Example: "0.92"
+                ),
             ]
         ),
         Loss("bypass_duct", "Bypass duct."),
@@ -215,9 +583,34 @@ internal static class Schema
             false,
             "A forced mixer: core and bypass stream meet at equal static pressure, mix, and leave by the core nozzle.",
             [
-                new("core_mach", Dimension.Number, "Mach number of the core stream where they meet, at the design point.", 0.1, 0.9, Required: true, Example: "0.45"),
-                new("effectiveness", Dimension.Share, "Share of the ideal gain of thrust by mixing that is had.", 0, 1, Default: "1", Example: "0.8"),
-                new("pressure_loss", Dimension.Share, "Total-pressure loss of mixer and tailpipe at the design point.", 0, 0.5, MostAllowed: false, Default: "0", Example: "\"0.6 %\""),
+                new(
+                    "core_mach",
+                    Dimension.Number,
+                    "Mach number of the core stream where they meet, at the design point.",
+                    0.1,
+                    0.9,
+                    Required: true,
+                    Example: "0.45"
+                ),
+                new(
+                    "effectiveness",
+                    Dimension.Share,
+                    "Share of the ideal gain of thrust by mixing that is had.",
+                    0,
+                    1,
+                    Default: "1",
+                    Example: "0.8"
+                ),
+                new(
+                    "pressure_loss",
+                    Dimension.Share,
+                    "Total-pressure loss of mixer and tailpipe at the design point.",
+                    0,
+                    0.5,
+                    MostAllowed: false,
+                    Default: "0",
+                    Example: "\"0.6 %\""
+                ),
             ]
         ),
         Nozzle("core_nozzle", "Convergent nozzle of the core stream, or of the mixed one."),
@@ -227,8 +620,24 @@ internal static class Schema
             false,
             "What the thrust lever commands: corrected speed of the first spool.",
             [
-                new("idle_speed", Dimension.Share, "Relative corrected speed at lever 0.", 0.1, 1, Default: "30 %", Example: "\"30 %\""),
-                new("full_speed", Dimension.Share, "Relative corrected speed at lever 1.", 0.5, 1.5, Default: "105 %", Example: "\"105 %\""),
+                new(
+                    "idle_speed",
+                    Dimension.Share,
+                    "Relative corrected speed at lever 0.",
+                    0.1,
+                    1,
+                    Default: "30 %",
+                    Example: "\"30 %\""
+                ),
+                new(
+                    "full_speed",
+                    Dimension.Share,
+                    "Relative corrected speed at lever 1.",
+                    0.5,
+                    1.5,
+                    Default: "105 %",
+                    Example: "\"105 %\""
+                ),
             ]
         ),
         new(
@@ -238,7 +647,13 @@ internal static class Schema
             [
                 new("name", Dimension.Text, "Its name.", Required: true, Example: "\"take-off\""),
                 new("thrust", Dimension.Force, "Flat thrust, static at sea level.", 0, LeastAllowed: false),
-                new("flat_to", Dimension.TemperatureDifference, "Offset from the standard temperature up to which the thrust is flat.", -60, 60),
+                new(
+                    "flat_to",
+                    Dimension.TemperatureDifference,
+                    "Offset from the standard temperature up to which the thrust is flat.",
+                    -60,
+                    60
+                ),
             ]
         ),
         new(
@@ -246,8 +661,21 @@ internal static class Schema
             true,
             "A limit of the rating above it.",
             [
-                new("quantity", Dimension.Text, "What is limited; EGT is T45.", Required: true, Choices: LimitQuantities, Example: "\"T41\""),
-                new("value", Dimension.Dependent, "The limit: a temperature, a pressure, a share of design speed, or a number for EPR.", Required: true, Example: "\"1700 K\""),
+                new(
+                    "quantity",
+                    Dimension.Text,
+                    "What is limited; EGT is T45.",
+                    Required: true,
+                    Choices: LimitQuantities,
+                    Example: "\"T41\""
+                ),
+                new(
+                    "value",
+                    Dimension.Dependent,
+                    "The limit: a temperature, a pressure, a share of design speed, or a number for EPR.",
+                    Required: true,
+                    Example: "\"1700 K\""
+                ),
             ]
         ),
     ];
@@ -259,7 +687,18 @@ internal static class Schema
             name,
             false,
             meaning,
-            [new("pressure_loss", Dimension.Share, "Total-pressure loss at the design point.", 0, 0.5, MostAllowed: false, Default: "0", Example: "\"1.5 %\"")]
+            [
+                new(
+                    "pressure_loss",
+                    Dimension.Share,
+                    "Total-pressure loss at the design point.",
+                    0,
+                    0.5,
+                    MostAllowed: false,
+                    Default: "0",
+                    Example: "\"1.5 %\""
+                ),
+            ]
         );
 
     private static TableSpec Nozzle(string name, string meaning) =>
@@ -268,9 +707,33 @@ internal static class Schema
             false,
             meaning,
             [
-                new("efficiency", Dimension.Share, "Isentropic efficiency up to the exit plane.", 0.5, 1, Default: "1", Example: "0.95"),
-                new("velocity_coefficient", Dimension.Share, "Jet momentum over that of the exit speed.", 0.5, 1, Default: "1", Example: "0.995"),
-                new("discharge_coefficient", Dimension.Share, "Effective over geometric throat area.", 0.5, 1, Default: "1", Example: "0.98"),
+                new(
+                    "efficiency",
+                    Dimension.Share,
+                    "Isentropic efficiency up to the exit plane.",
+                    0.5,
+                    1,
+                    Default: "1",
+                    Example: "0.95"
+                ),
+                new(
+                    "velocity_coefficient",
+                    Dimension.Share,
+                    "Jet momentum over that of the exit speed.",
+                    0.5,
+                    1,
+                    Default: "1",
+                    Example: "0.995"
+                ),
+                new(
+                    "discharge_coefficient",
+                    Dimension.Share,
+                    "Effective over geometric throat area.",
+                    0.5,
+                    1,
+                    Default: "1",
+                    Example: "0.98"
+                ),
             ]
         );
 }

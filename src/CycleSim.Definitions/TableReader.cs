@@ -23,15 +23,7 @@ internal sealed class TableReader
             return;
         foreach (var key in spec.Keys)
             if (key.Required && !_entries.ContainsKey(key.Name))
-                _problems.Add(
-                    new Problem(
-                        source,
-                        Node.Line,
-                        1,
-                        Path(key.Name),
-                        $"is missing. {Expected(key)}"
-                    )
-                );
+                _problems.Add(new Problem(source, Node.Line, 1, Path(key.Name), $"is missing. {Expected(key)}"));
     }
 
     public TomlTableNode Node { get; }
@@ -53,7 +45,13 @@ internal sealed class TableReader
     {
         var entry = _entries.GetValueOrDefault(key);
         _problems.Add(
-            new Problem(_source, entry?.Line ?? Node.Line, entry?.Column ?? 1, key.Length > 0 ? Path(key) : Node.Path, message)
+            new Problem(
+                _source,
+                entry?.Line ?? Node.Line,
+                entry?.Column ?? 1,
+                key.Length > 0 ? Path(key) : Node.Path,
+                message
+            )
         );
     }
 
@@ -140,7 +138,10 @@ internal sealed class TableReader
             case StringValueSyntax { Value: { } text }:
                 if (dimension is Dimension.Number or Dimension.Whole)
                 {
-                    Refuse(entry, $"must be a number without quotes and unit; '{Spelling.OneLine(text)}' was given. {expected}");
+                    Refuse(
+                        entry,
+                        $"must be a number without quotes and unit; '{Spelling.OneLine(text)}' was given. {expected}"
+                    );
                     return null;
                 }
 

@@ -93,7 +93,5 @@ internal static class TomlTables
     }
 
     private static string KeyText(KeySyntax key) =>
-        string.Concat(
-            key.ToString().Trim().Where(c => c != '"' && c != ' ')
-        );
+        string.Concat(key.ToString().Trim().Where(c => c != '"' && c != ' '));
 }

@@ -10,47 +10,45 @@ open CycleSim.Reports
 open FSharp.Data.UnitSystems.SI.UnitSymbols
 
 /// One outside temperature of a flat rating: the point, or the reason why there is none.
-type FlatRatingRow =
-    {
-        /// Outside air temperature.
-        OutsideTemperature: float<K>
-        /// Offset from the standard temperature at this altitude.
-        IsaOffset: float<K>
-        /// What ends the thrust here: "flat" or the name of the governing limit.
-        Governing: string
-        /// The operating point with its stations; null where there is none.
-        Point: OperatingPoint | null
-        /// Why there is no point; empty where there is one.
-        Reason: string
-    }
+type FlatRatingRow = {
+    /// Outside air temperature.
+    OutsideTemperature: float<K>
+    /// Offset from the standard temperature at this altitude.
+    IsaOffset: float<K>
+    /// What ends the thrust here: "flat" or the name of the governing limit.
+    Governing: string
+    /// The operating point with its stations; null where there is none.
+    Point: OperatingPoint | null
+    /// Why there is no point; empty where there is one.
+    Reason: string
+}
 
 /// Thrust of a rating over the outside temperature at one altitude and Mach number, and where its flat part breaks.
-type FlatRatingResult =
-    {
-        Engine: string
-        Rating: string
-        PressureAltitude: float<m>
-        Mach: float
-        /// Thrust up to the break.
-        FlatThrust: float<N>
-        /// Every limit of the rating, the implied one included.
-        Limits: IReadOnlyList<Limit>
-        /// The limit that thrust and flat-to temperature amount to, where the definition gives both.
-        ImpliedLimit: Nullable<Limit>
-        /// Offset from ISA that the rating is flat to with the definition's own bleeds and offtakes.
-        FlatTo: float<K>
-        /// Outside temperature at which the first limit is reached with the flat thrust.
-        BreakTemperature: float<K>
-        BreakIsaOffset: float<K>
-        /// The limit that is reached there.
-        BreakLimit: Limit
-        /// Iterations and largest relative imbalance of the direct solution for the break.
-        BreakIterations: int
-        BreakResidual: float
-        /// Loss of thrust per kelvin beyond the break, as a share of the flat thrust, over the first ten kelvin.
-        LapsePerKelvin: float</K>
-        Rows: IReadOnlyList<FlatRatingRow>
-    }
+type FlatRatingResult = {
+    Engine: string
+    Rating: string
+    PressureAltitude: float<m>
+    Mach: float
+    /// Thrust up to the break.
+    FlatThrust: float<N>
+    /// Every limit of the rating, the implied one included.
+    Limits: IReadOnlyList<Limit>
+    /// The limit that thrust and flat-to temperature amount to, where the definition gives both.
+    ImpliedLimit: Nullable<Limit>
+    /// Offset from ISA that the rating is flat to with the definition's own bleeds and offtakes.
+    FlatTo: float<K>
+    /// Outside temperature at which the first limit is reached with the flat thrust.
+    BreakTemperature: float<K>
+    BreakIsaOffset: float<K>
+    /// The limit that is reached there.
+    BreakLimit: Limit
+    /// Iterations and largest relative imbalance of the direct solution for the break.
+    BreakIterations: int
+    BreakResidual: float
+    /// Loss of thrust per kelvin beyond the break, as a share of the flat thrust, over the first ten kelvin.
+    LapsePerKelvin: float</ K>
+    Rows: IReadOnlyList<FlatRatingRow>
+}
 
 /// Flat rating: thrust against outside temperature.
 [<AbstractClass; Sealed>]
@@ -58,13 +56,19 @@ type FlatRating private () =
 
     static member private Condition(altitude: float<m>, mach: float, temperature: float, humidity: float) =
         let flight = FlightCondition.AtTemperature(float altitude, mach, temperature)
-        if humidity > 0.0 then flight.WithRelativeHumidity humidity else flight
+
+        if humidity > 0.0 then
+            flight.WithRelativeHumidity humidity
+        else
+            flight
 
     static member private Inputs(model: EngineModel, flight: FlightCondition, loads: Action<float[]> | null) =
         let inputs = model.Inputs(&flight)
+
         match loads with
         | null -> ()
         | act -> act.Invoke inputs
+
         inputs
 
     static member private Row
@@ -79,24 +83,30 @@ type FlatRating private () =
         ) =
         let flight = FlatRating.Condition(altitude, mach, float temperature, humidity)
         let isa = flight.IsaOffset * 1.0<K>
+
         try
             let point = model.AtRating(&flight, rating, FlatRating.Inputs(model, flight, loads))
+
             let governing =
                 if point.Setting.Quantity = Quantity.NetThrust then
                     "flat"
                 else
                     QuantityText.Name point.Setting.Quantity
-            { OutsideTemperature = temperature
-              IsaOffset = isa
-              Governing = governing
-              Point = point
-              Reason = "" }
-        with :? NoSolutionException as none ->
-            { OutsideTemperature = temperature
-              IsaOffset = isa
-              Governing = ""
-              Point = null
-              Reason = none.Message }
+
+            {
+                OutsideTemperature = temperature
+                IsaOffset = isa
+                Governing = governing
+                Point = point
+                Reason = ""
+            }
+        with :? NoSolutionException as none -> {
+            OutsideTemperature = temperature
+            IsaOffset = isa
+            Governing = ""
+            Point = null
+            Reason = none.Message
+        }
 
     /// <summary>Outside temperatures from ISA - 40 K to ISA + 35 K in steps of 5 K.</summary>
     static member UsualTemperatures(altitude: float<m>) : float<K>[] =
@@ -156,7 +166,7 @@ type FlatRating private () =
 
         let lapse =
             match hot.Point with
-            | null -> nan * 1.0</K>
+            | null -> nan * 1.0< / K>
             | point -> (1.0 - point.NetThrust / flat) / beyond
 
         let chosen =
@@ -164,18 +174,20 @@ type FlatRating private () =
             | null -> FlatRating.UsualTemperatures altitude
             | given -> given
 
-        { Engine = model.Engine.Definition.Name
-          Rating = rating.Definition.Name
-          PressureAltitude = altitude
-          Mach = mach
-          FlatThrust = flat * 1.0<N>
-          Limits = rating.Limits
-          ImpliedLimit = rating.ImpliedLimit
-          FlatTo = rating.FlatTo * 1.0<K>
-          BreakTemperature = breakTemperature * 1.0<K>
-          BreakIsaOffset = (breakTemperature - standard) * 1.0<K>
-          BreakLimit = rating.Limits[governing]
-          BreakIterations = outcome.Iterations
-          BreakResidual = outcome.Residual
-          LapsePerKelvin = lapse
-          Rows = chosen |> Array.map row }
+        {
+            Engine = model.Engine.Definition.Name
+            Rating = rating.Definition.Name
+            PressureAltitude = altitude
+            Mach = mach
+            FlatThrust = flat * 1.0<N>
+            Limits = rating.Limits
+            ImpliedLimit = rating.ImpliedLimit
+            FlatTo = rating.FlatTo * 1.0<K>
+            BreakTemperature = breakTemperature * 1.0<K>
+            BreakIsaOffset = (breakTemperature - standard) * 1.0<K>
+            BreakLimit = rating.Limits[governing]
+            BreakIterations = outcome.Iterations
+            BreakResidual = outcome.Residual
+            LapsePerKelvin = lapse
+            Rows = chosen |> Array.map row
+        }

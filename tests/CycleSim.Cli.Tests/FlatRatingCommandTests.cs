@@ -7,7 +7,19 @@ public class FlatRatingCommandTests
     {
         var run = CommandLine.Run("flat-rating", "velda-27");
         Assert.Equal(0, run.ExitCode);
-        foreach (var text in new[] { "flat thrust", "120.00 kN", "break temperature", "303.1 K", "N1 %", "EPR", "% of the flat thrust per K", "not for dispatch" })
+        foreach (
+            var text in new[]
+            {
+                "flat thrust",
+                "120.00 kN",
+                "break temperature",
+                "303.1 K",
+                "N1 %",
+                "EPR",
+                "% of the flat thrust per K",
+                "not for dispatch",
+            }
+        )
             Assert.Contains(text, run.Output);
     }
 
@@ -40,12 +52,32 @@ public class FlatRatingCommandTests
     public void Bleed_lowers_the_break_and_temperatures_are_as_asked()
     {
         var run = CommandLine.Run(
-            "flat-rating", "velda-27", "--altitude", "6000 ft", "--bleed", "customer-bleed=2 %",
-            "--from", "20 °C", "--to", "40 °C", "--step", "2 K", "--temperatures", "C"
+            "flat-rating",
+            "velda-27",
+            "--altitude",
+            "6000 ft",
+            "--bleed",
+            "customer-bleed=2 %",
+            "--from",
+            "20 °C",
+            "--to",
+            "40 °C",
+            "--step",
+            "2 K",
+            "--temperatures",
+            "C"
         );
         Assert.Equal(0, run.ExitCode);
         Assert.Contains("OAT °C", run.Output);
-        var json = CommandLine.Run("flat-rating", "velda-27", "--altitude", "6000 ft", "--bleed", "customer-bleed=2 %", "--json");
+        var json = CommandLine.Run(
+            "flat-rating",
+            "velda-27",
+            "--altitude",
+            "6000 ft",
+            "--bleed",
+            "customer-bleed=2 %",
+            "--json"
+        );
         Assert.InRange(json.Number("break_isa_offset_K"), -5.0, 14.0);
     }
 

@@ -7,7 +7,18 @@ public class PointCommandTests
     {
         var run = CommandLine.Run("point", "velda-27", "--design");
         Assert.Equal(0, run.ExitCode);
-        foreach (var text in new[] { "net thrust", "kN", "g/(kN s)", "Tt K", "Pt kPa", "hpt rotor inlet", "not for dispatch" })
+        foreach (
+            var text in new[]
+            {
+                "net thrust",
+                "kN",
+                "g/(kN s)",
+                "Tt K",
+                "Pt kPa",
+                "hpt rotor inlet",
+                "not for dispatch",
+            }
+        )
             Assert.Contains(text, run.Output);
         Assert.Equal("", run.Error);
     }
@@ -18,7 +29,11 @@ public class PointCommandTests
         var run = CommandLine.Run("point", "velda-27", "--design", "--json");
         Assert.Equal(1520.0, run.Number("T4_K"), 1e-6);
         Assert.Equal(5.8, run.Number("bypass_ratio"), 1e-9);
-        Assert.Equal(run.Number("fuel_flow_kg_per_s") / run.Number("net_thrust_N"), run.Number("sfc_kg_per_N_s"), 1e-15);
+        Assert.Equal(
+            run.Number("fuel_flow_kg_per_s") / run.Number("net_thrust_N"),
+            run.Number("sfc_kg_per_N_s"),
+            1e-15
+        );
         Assert.InRange(run.Number("residual"), 0.0, 1e-10);
         Assert.InRange(run.Number("iterations"), 0, 10);
         var stations = run.Json.GetProperty("stations").EnumerateArray().ToList();
@@ -54,7 +69,17 @@ public class PointCommandTests
     [InlineData("--lever", "70 %", "lever_position", 0.7)]
     public void Any_of_the_settings_is_met(string option, string value, string field, double expected)
     {
-        var run = CommandLine.Run("point", "velda-27", "--altitude", "2000 ft", "--mach", "0.2", option, value, "--json");
+        var run = CommandLine.Run(
+            "point",
+            "velda-27",
+            "--altitude",
+            "2000 ft",
+            "--mach",
+            "0.2",
+            option,
+            value,
+            "--json"
+        );
         Assert.Equal(0, run.ExitCode);
         Assert.Equal(1.0, run.Number(field) / expected, 2e-6);
     }
@@ -63,15 +88,36 @@ public class PointCommandTests
     public void Spool_speeds_bleed_and_offtake_are_met()
     {
         var run = CommandLine.Run(
-            "point", "velda-27", "--altitude", "0 m", "--cas", "100 kt", "--isa", "-10 K", "--humidity", "60 %",
-            "--N2", "98 %", "--bleed", "customer-bleed=2 %", "--offtake", "high=120 kW", "--json"
+            "point",
+            "velda-27",
+            "--altitude",
+            "0 m",
+            "--cas",
+            "100 kt",
+            "--isa",
+            "-10 K",
+            "--humidity",
+            "60 %",
+            "--N2",
+            "98 %",
+            "--bleed",
+            "customer-bleed=2 %",
+            "--offtake",
+            "high=120 kW",
+            "--json"
         );
         Assert.Equal(0, run.ExitCode);
         var spool = run.Json.GetProperty("spools")[1];
         Assert.Equal(0.98, spool.GetProperty("relative_speed").GetDouble(), 1e-9);
         Assert.Equal(120e3, spool.GetProperty("power_offtake_W").GetDouble(), 1e-6);
-        var bleed = run.Json.GetProperty("air").EnumerateArray().Single(a => a.GetProperty("name").GetString() == "customer-bleed");
-        var hpc = run.Json.GetProperty("stations").EnumerateArray().Single(s => s.GetProperty("station").GetString() == "25");
+        var bleed = run
+            .Json.GetProperty("air")
+            .EnumerateArray()
+            .Single(a => a.GetProperty("name").GetString() == "customer-bleed");
+        var hpc = run
+            .Json.GetProperty("stations")
+            .EnumerateArray()
+            .Single(s => s.GetProperty("station").GetString() == "25");
         Assert.Equal(
             0.02,
             bleed.GetProperty("mass_flow_kg_per_s").GetDouble() / hpc.GetProperty("mass_flow_kg_per_s").GetDouble(),

@@ -63,8 +63,18 @@ public class DefinitionFileTests
             { "mass_flow = \"168 kg/s\"", "", "design", "needs mass_flow or net_thrust" },
             { "bypass_ratio = 5.8", "bypass_ratio = 0", "design.bypass_ratio", "must be above zero" },
             { "pressure_ratio = 12.0", "pressure_ratio = -12.0", "compressor[2].pressure_ratio", "above 1" },
-            { "isentropic_efficiency = 0.89", "isentropic_efficiency = 1.2", "turbine[1].isentropic_efficiency", "above 0 to 1" },
-            { "isentropic_efficiency = 0.89", "isentropic_efficiency = 0.89\npolytropic_efficiency = 0.9", "turbine[1].polytropic_efficiency", "one of the two" },
+            {
+                "isentropic_efficiency = 0.89",
+                "isentropic_efficiency = 1.2",
+                "turbine[1].isentropic_efficiency",
+                "above 0 to 1"
+            },
+            {
+                "isentropic_efficiency = 0.89",
+                "isentropic_efficiency = 0.89\npolytropic_efficiency = 0.9",
+                "turbine[1].polytropic_efficiency",
+                "one of the two"
+            },
             { "pressure_loss = \"4.5 %\"", "pressure_loss = \"55 %\"", "combustor.pressure_loss", "below 0.5" },
             { "stages = 4", "stages = 4.5", "turbine[2].stages", "whole number" },
             { "name = \"lpt\"", "name = \"hpt\"", "turbine[2].name", "already the name" },
@@ -76,7 +86,12 @@ public class DefinitionFileTests
             { "[combustor]", "[[combustor]]", "combustor", "write this table as [combustor]" },
             { "quantity = \"T41\"", "quantity = \"T42\"", "rating[3].limit[1].quantity", "none of" },
             { "value = \"1500 K\"", "value = \"104 %\"", "rating[3].limit[1].value", "is a share" },
-            { "idle_speed = \"30 %\"\nfull_speed = \"105 %\"", "idle_speed = \"80 %\"\nfull_speed = \"60 %\"", "control.idle_speed", "below full_speed" },
+            {
+                "idle_speed = \"30 %\"\nfull_speed = \"105 %\"",
+                "idle_speed = \"80 %\"\nfull_speed = \"60 %\"",
+                "control.idle_speed",
+                "below full_speed"
+            },
             { "idle_speed = \"30 %\"", "idle_speed = \"5 %\"", "control.idle_speed", "0.1 to 1" },
             { "model = \"thermally perfect\"", "model = \"constant\"", "gas.model", "needs air_cp" },
             { "fuel = \"Jet A-1\"", "fuel = \"petrol\"", "gas.fuel", "none of" },
@@ -120,14 +135,25 @@ public class DefinitionFileTests
     {
         Assert.Contains(
             "not readable as TOML",
-            Assert.Throws<DefinitionException>(() => DefinitionFile.Parse(Velda[..(Velda.IndexOf("35000", StringComparison.Ordinal) + 3)], "t")).Message
+            Assert
+                .Throws<DefinitionException>(() =>
+                    DefinitionFile.Parse(Velda[..(Velda.IndexOf("35000", StringComparison.Ordinal) + 3)], "t")
+                )
+                .Message
         );
         Assert.Contains(
             "there is no [[turbine]]",
-            Assert.Throws<DefinitionException>(() => DefinitionFile.Parse(Velda[..Velda.IndexOf("[[turbine]]", StringComparison.Ordinal)], "t")).Message
+            Assert
+                .Throws<DefinitionException>(() =>
+                    DefinitionFile.Parse(Velda[..Velda.IndexOf("[[turbine]]", StringComparison.Ordinal)], "t")
+                )
+                .Message
         );
         Assert.Contains("is missing", Assert.Throws<DefinitionException>(() => DefinitionFile.Parse("", "t")).Message);
-        Assert.Contains("no such file", Assert.Throws<DefinitionException>(() => DefinitionFile.Load("none/such.toml")).Message);
+        Assert.Contains(
+            "no such file",
+            Assert.Throws<DefinitionException>(() => DefinitionFile.Load("none/such.toml")).Message
+        );
         var path = Path.GetTempFileName();
         try
         {
@@ -151,7 +177,10 @@ public class DefinitionFileTests
     public void Shipped_engines_can_be_sized()
     {
         Assert.NotEmpty(EngineLibrary.Names);
-        Assert.All(EngineLibrary.Names, name => Assert.True(Sizing.Size(EngineLibrary.Load(name).Engine).DesignThrust > 0.0));
+        Assert.All(
+            EngineLibrary.Names,
+            name => Assert.True(Sizing.Size(EngineLibrary.Load(name).Engine).DesignThrust > 0.0)
+        );
     }
 
     [Fact]

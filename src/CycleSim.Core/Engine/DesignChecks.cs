@@ -34,7 +34,13 @@ internal static class DesignChecks
             );
     }
 
-    public static void CheckCombustor(EngineDefinition definition, double airFlow, double t3, double t4, double fuelFlow)
+    public static void CheckCombustor(
+        EngineDefinition definition,
+        double airFlow,
+        double t3,
+        double t4,
+        double fuelFlow
+    )
     {
         if (!(airFlow > 0.0))
             throw new SizingException(

@@ -247,8 +247,7 @@ public sealed class FlowPath<T>
     private void LoadFanSpool()
     {
         FanTip.W = FanFace.W - FanHub.W;
-        _spoolPower[_engine.Fan!.Spool] +=
-            FanTip.W * (FanTip.H - FanFace.H) + FanHub.W * (FanHub.H - FanFace.H);
+        _spoolPower[_engine.Fan!.Spool] += FanTip.W * (FanTip.H - FanFace.H) + FanHub.W * (FanHub.H - FanFace.H);
     }
 
     private void TakeAir(in GasRelations<T> gas, int i, int k, in FlowState<T> inlet, in FlowState<T> outlet)
@@ -471,8 +470,7 @@ public sealed class FlowPath<T>
         var bypass = BypassExit;
         core.P *= left;
         bypass.P *= left;
-        var apart =
-            Leave(gas, core, nozzle, ambient, out _, out _) + Leave(gas, bypass, nozzle, ambient, out _, out _);
+        var apart = Leave(gas, core, nozzle, ambient, out _, out _) + Leave(gas, bypass, nozzle, ambient, out _, out _);
         GrossThrustCore = whole * mixer.Effectiveness + apart * (1.0 - mixer.Effectiveness);
     }
 
@@ -488,8 +486,7 @@ public sealed class FlowPath<T>
     )
     {
         ref var speed = ref CorrectedSpeed[index];
-        speed =
-            Unknowns[compressor.Spool] * compressor.SpeedReference / T.Sqrt(gas.GasConstant(inlet.Y) * inlet.Tt);
+        speed = Unknowns[compressor.Spool] * compressor.SpeedReference / T.Sqrt(gas.GasConstant(inlet.Y) * inlet.Tt);
         ref var beta = ref Unknowns[BetaOffset + index];
         compressor.Map.Read(speed.Value, beta.Value, out var m);
         ref var flowFactor = ref Inputs[_engine.Layout.CompressorFlow(index)];
@@ -501,13 +498,7 @@ public sealed class FlowPath<T>
 
     [MethodImpl(MethodImplOptions.AggressiveInlining)]
     private static T Lane(in MapReading m, int lane, double scale, in T speed, in T beta) =>
-        T.Chain(
-            m.Value[lane] * scale,
-            speed,
-            m.PerSpeed[lane] * scale,
-            beta,
-            m.PerBeta[lane] * scale
-        );
+        T.Chain(m.Value[lane] * scale, speed, m.PerSpeed[lane] * scale, beta, m.PerBeta[lane] * scale);
 
     // Positions follow the speeds; without a fan the first position is that of core compressor 0 (index 1).
     private int BetaOffset => _engine.Spools.Length - (_engine.HasFan ? 0 : 1);

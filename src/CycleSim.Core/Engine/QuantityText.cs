@@ -10,8 +10,10 @@ public static class QuantityText
         {
             Quantity.NetThrust => string.Create(CultureInfo.InvariantCulture, $"{value / 1000.0:F2} kN"),
             Quantity.FuelFlow => string.Create(CultureInfo.InvariantCulture, $"{value:F4} kg/s"),
-            Quantity.T4 or Quantity.T41 or Quantity.T45 or Quantity.T5 or Quantity.T3 =>
-                string.Create(CultureInfo.InvariantCulture, $"{value:F1} K"),
+            Quantity.T4 or Quantity.T41 or Quantity.T45 or Quantity.T5 or Quantity.T3 => string.Create(
+                CultureInfo.InvariantCulture,
+                $"{value:F1} K"
+            ),
             Quantity.P3 => string.Create(CultureInfo.InvariantCulture, $"{value / 1000.0:F1} kPa"),
             Quantity.Epr => string.Create(CultureInfo.InvariantCulture, $"{value:F4}"),
             _ => string.Create(CultureInfo.InvariantCulture, $"{value * 100.0:F2} %"),

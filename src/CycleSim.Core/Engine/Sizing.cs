@@ -35,7 +35,9 @@ public static class Sizing
                 return engine;
         }
 
-        throw new SizingException($"{definition.Name}: no mass flow gives {design.NetThrust:F0} N at the design point.");
+        throw new SizingException(
+            $"{definition.Name}: no mass flow gives {design.NetThrust:F0} N at the design point."
+        );
     }
 
     private static SizedEngine SizeForFlow(EngineDefinition definition, double massFlow)
@@ -105,12 +107,7 @@ public static class Sizing
         Scale(engine.Fan!, plainGas, inlet, engine.DesignMassFlow, definition.PressureRatio, tip);
     }
 
-    internal static void ScaleCompressor<T>(
-        SizedEngine engine,
-        in GasRelations<T> gas,
-        int k,
-        in FlowState<T> upstream
-    )
+    internal static void ScaleCompressor<T>(SizedEngine engine, in GasRelations<T> gas, int k, in FlowState<T> upstream)
         where T : struct, IScalar<T>
     {
         var (plainGas, inlet) = InPlain(gas, upstream);

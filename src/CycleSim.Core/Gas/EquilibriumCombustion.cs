@@ -63,7 +63,10 @@ public static class EquilibriumCombustion
                     + $"uses up the oxygen; {fuelAirRatio:G5} was given."
             );
         if (pressure is not (>= 1e3 and <= 1e7))
-            throw new ArgumentOutOfRangeException(nameof(pressure), $"Pressure must lie between 1 kPa and 10 MPa; {pressure:G5} Pa was given.");
+            throw new ArgumentOutOfRangeException(
+                nameof(pressure),
+                $"Pressure must lie between 1 kPa and 10 MPa; {pressure:G5} Pa was given."
+            );
 
         // Everything per kilogram of dry air.
         var atoms = new double[Elements];

@@ -68,7 +68,9 @@ public static class NasaGlennData
     public static NasaSpecies Species(string name) =>
         All.TryGetValue(name, out var species)
             ? species
-            : throw new KeyNotFoundException($"No species '{name}' in the data; there are {string.Join(", ", All.Keys)}.");
+            : throw new KeyNotFoundException(
+                $"No species '{name}' in the data; there are {string.Join(", ", All.Keys)}."
+            );
 
     private static Dictionary<string, NasaSpecies> Load()
     {

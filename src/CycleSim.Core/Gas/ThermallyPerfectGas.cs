@@ -275,12 +275,7 @@ public sealed class ThermallyPerfectGas : GasModel
 
     /// <summary>The four temperature functions of all three lines.</summary>
     [MethodImpl(MethodImplOptions.AggressiveInlining)]
-    private void Lines(
-        double t,
-        out Vector256<double> air,
-        out Vector256<double> water,
-        out Vector256<double> fuel
-    )
+    private void Lines(double t, out Vector256<double> air, out Vector256<double> water, out Vector256<double> fuel)
     {
         ref var terms = ref _terms[t < Join ? 0 : 3 * Terms];
         var r = 1.0 / t;
@@ -315,13 +310,7 @@ public sealed class ThermallyPerfectGas : GasModel
         var perQ = water - air;
         var moist = MulAdd(Vector256.Create(q), perQ, air);
         var perY = fuel - moist;
-        GasPoint.Fill(
-            out p,
-            t,
-            MulAdd(Vector256.Create(y), perY, moist),
-            perY,
-            perQ * Vector256.Create(1.0 - y)
-        );
+        GasPoint.Fill(out p, t, MulAdd(Vector256.Create(y), perY, moist), perY, perQ * Vector256.Create(1.0 - y));
     }
 
     [MethodImpl(MethodImplOptions.AggressiveInlining)]

@@ -29,13 +29,7 @@ public sealed class CompressorMap
     /// <param name="flow">corrected flow, any unit, indexed [speed, beta]</param>
     /// <param name="pressureRatio">total-pressure ratio, above 1</param>
     /// <param name="efficiency">isentropic efficiency, 0 to 1</param>
-    public CompressorMap(
-        double[] speeds,
-        double[] betas,
-        double[,] flow,
-        double[,] pressureRatio,
-        double[,] efficiency
-    )
+    public CompressorMap(double[] speeds, double[] betas, double[,] flow, double[,] pressureRatio, double[,] efficiency)
     {
         (_speeds, _betas) = (speeds, betas);
         int ns = speeds.Length,
@@ -86,8 +80,7 @@ public sealed class CompressorMap
         reading.Value = ((r3 * u + r2) * u + r1) * u + r0;
         reading.PerSpeed = ((three * r3 * u + two * r2) * u + r1) * Vector256.Create(hs);
         reading.PerBeta = (((d3 * u + d2) * u + d1) * u + d0) * Vector256.Create(hb);
-        reading.Value +=
-            reading.PerSpeed * Vector256.Create(speed - s) + reading.PerBeta * Vector256.Create(beta - b);
+        reading.Value += reading.PerSpeed * Vector256.Create(speed - s) + reading.PerBeta * Vector256.Create(beta - b);
     }
 
     [MethodImpl(MethodImplOptions.AggressiveInlining)]

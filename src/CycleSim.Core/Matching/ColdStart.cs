@@ -20,8 +20,7 @@ internal static class ColdStart
             return false;
         engine.DesignUnknowns.CopyTo(unknowns, 0);
         var design = engine.DesignInputs;
-        var ratio =
-            thrust / engine.DesignThrust * design[InputLayout.Pressure] / inputs[InputLayout.Pressure];
+        var ratio = thrust / engine.DesignThrust * design[InputLayout.Pressure] / inputs[InputLayout.Pressure];
         ratio = Math.Clamp(ratio, 0.03, 1.3);
         var mach = inputs[InputLayout.Mach];
         var theta = Total(inputs) / Total(design);

@@ -59,7 +59,9 @@ public static class Diagnosis
             if (speed > 0.99 * compressor.Map.HighestSpeed)
                 edges.Add(Text($"{compressor.Name} reaches the top of its map ({speed * 100.0:F0} % corrected speed)"));
             else if (speed < 1.01 * compressor.Map.LowestSpeed)
-                edges.Add(Text($"{compressor.Name} reaches the bottom of its map ({speed * 100.0:F0} % corrected speed)"));
+                edges.Add(
+                    Text($"{compressor.Name} reaches the bottom of its map ({speed * 100.0:F0} % corrected speed)")
+                );
             if (position > 0.99)
                 edges.Add(Text($"{compressor.Name} reaches its surge line ({speed * 100.0:F0} % corrected speed)"));
             else if (position < 0.01)

@@ -26,7 +26,13 @@ public enum MatchStatus
 }
 
 /// <summary>Outcome of one match; the numbers are in the matcher.</summary>
-public readonly record struct MatchOutcome(MatchStatus Status, double Residual, int Iterations, int Evaluations, int Culprit)
+public readonly record struct MatchOutcome(
+    MatchStatus Status,
+    double Residual,
+    int Iterations,
+    int Evaluations,
+    int Culprit
+)
 {
     public bool Solved => Status == MatchStatus.Solved;
 }

@@ -112,9 +112,18 @@ public sealed class Matcher
         {
             var speed = i < spools;
             var temperature = i == m - 1;
-            _largestStep[i] = speed ? 0.15 : temperature ? 0.35 : 0.4;
-            _lower[i] = speed ? 0.05 : temperature ? 0.25 : -0.6;
-            _upper[i] = speed ? 1.6 : temperature ? 2.9 : 1.6;
+            _largestStep[i] =
+                speed ? 0.15
+                : temperature ? 0.35
+                : 0.4;
+            _lower[i] =
+                speed ? 0.05
+                : temperature ? 0.25
+                : -0.6;
+            _upper[i] =
+                speed ? 1.6
+                : temperature ? 2.9
+                : 1.6;
         }
 
         for (var k = 0; k < problem.Freed.Length; k++)

@@ -159,8 +159,7 @@ public sealed class Rating
             );
     }
 
-    private static bool IsTemperature(Quantity q) =>
-        q is Quantity.T4 or Quantity.T41 or Quantity.T45 or Quantity.T5;
+    private static bool IsTemperature(Quantity q) => q is Quantity.T4 or Quantity.T41 or Quantity.T45 or Quantity.T5;
 }
 
 /// <summary>A rating that cannot be worked out; the message says why.</summary>

@@ -7,16 +7,19 @@ namespace CycleSim.Reports;
 /// <remarks>
 /// Entropy is counted without the mixing of unlike compositions, which is linear in the flows and would only add.
 /// </remarks>
-public sealed record AuditLine(string Component, double MassImbalance, double EnergyImbalance, double EntropyProduction);
+public sealed record AuditLine(
+    string Component,
+    double MassImbalance,
+    double EnergyImbalance,
+    double EntropyProduction
+);
 
 /// <summary>One line a component and one for the whole engine.</summary>
 public sealed record Audit(IReadOnlyList<AuditLine> Components, AuditLine Whole)
 {
     /// <summary>The largest relative imbalance of mass or energy anywhere.</summary>
     public double LargestImbalance =>
-        Components
-            .Append(Whole)
-            .Max(line => Math.Max(Math.Abs(line.MassImbalance), Math.Abs(line.EnergyImbalance)));
+        Components.Append(Whole).Max(line => Math.Max(Math.Abs(line.MassImbalance), Math.Abs(line.EnergyImbalance)));
 
     /// <summary>Sum of what the components produce less what leaves the engine in excess of what enters, over the latter.</summary>
     public double EntropyClosure =>

@@ -85,20 +85,14 @@ internal static class PointAudit
     public static double Power(SizedEngine engine, FlowPath<Plain> p, int k)
     {
         var inlet = p.CompressorInlet[k];
-        var power =
-            p.CompressorDelivery[k].W.Value * p.CompressorDelivery[k].H.Value - inlet.W.Value * inlet.H.Value;
+        var power = p.CompressorDelivery[k].W.Value * p.CompressorDelivery[k].H.Value - inlet.W.Value * inlet.H.Value;
         for (var i = 0; i < engine.Ports.Length; i++)
             if (engine.Ports[i].Compressor == k)
                 power += p.PortFlow[i].Value * p.PortEnthalpy[i].Value;
         return power;
     }
 
-    private static AuditLine Combustor(
-        SizedEngine engine,
-        FlowPath<Plain> p,
-        in GasRelations<Plain> gas,
-        Balance whole
-    )
+    private static AuditLine Combustor(SizedEngine engine, FlowPath<Plain> p, in GasRelations<Plain> gas, Balance whole)
     {
         var air = p.CombustorInlet;
         var burnt = p.CombustorExit;

@@ -137,7 +137,9 @@ public sealed class PointReporter
         {
             var inlet = _path.CompressorInlet[k];
             var outlet = _path.CompressorOutlet[k];
-            list.Add(Compressor(gas, _engine.Compressors[k], k + 1, inlet, outlet, PointAudit.Power(_engine, _path, k)));
+            list.Add(
+                Compressor(gas, _engine.Compressors[k], k + 1, inlet, outlet, PointAudit.Power(_engine, _path, k))
+            );
         }
 
         return list;
@@ -248,7 +250,14 @@ public sealed class PointReporter
             );
         return list;
 
-        NozzleReport One(string name, in Nozzle.Jet<Plain> jet, double total, NozzleDefinition nozzle, double area, double thrust) =>
+        NozzleReport One(
+            string name,
+            in Nozzle.Jet<Plain> jet,
+            double total,
+            NozzleDefinition nozzle,
+            double area,
+            double thrust
+        ) =>
             new(
                 name,
                 total / ambient,

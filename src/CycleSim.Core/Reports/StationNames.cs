@@ -26,7 +26,13 @@ public static class StationNames
             if (engine.HasFan || k > 0)
                 list.Add((InletNumber(engine, fromEnd), $"{compressors[k].Name} inlet", path.CompressorInlet[k]));
             list.Add(
-                (fromEnd == 0 ? "3" : fromEnd == 1 ? "24" : "23", $"{compressors[k].Name} exit", path.CompressorDelivery[k])
+                (
+                    fromEnd == 0 ? "3"
+                    : fromEnd == 1 ? "24"
+                    : "23",
+                    $"{compressors[k].Name} exit",
+                    path.CompressorDelivery[k]
+                )
             );
         }
 
@@ -35,8 +41,24 @@ public static class StationNames
         {
             var name = engine.Turbines[k].Definition.Name;
             var last = k == engine.Turbines.Length - 1;
-            list.Add((k == 0 ? "41" : k == 1 && !last ? "46" : "48", $"{name} rotor inlet", path.TurbineInlet[k]));
-            list.Add((last ? "5" : k == 0 ? "45" : "47", $"{name} exit", path.TurbineOutlet[k]));
+            list.Add(
+                (
+                    k == 0 ? "41"
+                    : k == 1 && !last ? "46"
+                    : "48",
+                    $"{name} rotor inlet",
+                    path.TurbineInlet[k]
+                )
+            );
+            list.Add(
+                (
+                    last ? "5"
+                    : k == 0 ? "45"
+                    : "47",
+                    $"{name} exit",
+                    path.TurbineOutlet[k]
+                )
+            );
         }
 
         var mixes = engine.Definition.Mixer is not null;

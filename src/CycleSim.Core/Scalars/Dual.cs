@@ -29,8 +29,7 @@ public readonly struct Dual(double value, Vector512<double> partials) : IScalar<
     public static Dual Constant(double value) => new(value, Vector512<double>.Zero);
 
     /// <summary>The variable itself: derivative one in its own place.</summary>
-    public static Dual Variable(double value, int index) =>
-        new(value, Vector512<double>.Zero.WithElement(index, 1.0));
+    public static Dual Variable(double value, int index) => new(value, Vector512<double>.Zero.WithElement(index, 1.0));
 
     [MethodImpl(MethodImplOptions.AggressiveInlining)]
     public static Dual operator +(in Dual a, in Dual b) => new(a.Value + b.Value, a._partials + b._partials);
@@ -40,10 +39,7 @@ public readonly struct Dual(double value, Vector512<double> partials) : IScalar<
 
     [MethodImpl(MethodImplOptions.AggressiveInlining)]
     public static Dual operator *(in Dual a, in Dual b) =>
-        new(
-            a.Value * b.Value,
-            Fma(a._partials, Vector512.Create(b.Value), b._partials * Vector512.Create(a.Value))
-        );
+        new(a.Value * b.Value, Fma(a._partials, Vector512.Create(b.Value), b._partials * Vector512.Create(a.Value)));
 
     [MethodImpl(MethodImplOptions.AggressiveInlining)]
     public static Dual operator /(in Dual a, in Dual b)

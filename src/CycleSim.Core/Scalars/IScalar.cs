@@ -18,14 +18,23 @@ public interface IScalar<T>
     static abstract T Constant(double value);
 
     static abstract T operator +(in T a, in T b);
+
     static abstract T operator -(in T a, in T b);
+
     static abstract T operator *(in T a, in T b);
+
     static abstract T operator /(in T a, in T b);
+
     static abstract T operator +(in T a, double b);
+
     static abstract T operator -(in T a, double b);
+
     static abstract T operator -(double a, in T b);
+
     static abstract T operator *(in T a, double b);
+
     static abstract T operator /(in T a, double b);
+
     static abstract T operator -(in T a);
 
     /// <summary>A value with its derivative with respect to one argument.</summary>

@@ -163,11 +163,7 @@ public class FlowPathTests
         var sized = Sizing.Size(
             definition with
             {
-                Design = definition.Design with
-                {
-                    CombustorExitTemperature = 0.0,
-                    RotorInletTemperature = 1450.0,
-                },
+                Design = definition.Design with { CombustorExitTemperature = 0.0, RotorInletTemperature = 1450.0 },
             }
         );
         Assert.Equal(1450.0, new EngineModel(sized).DesignPoint().T41, 1e-6);

@@ -97,8 +97,13 @@ public class ThermallyPerfectGasTests
             (t, y, q) =>
             {
                 Kerosene.AtTemperature(t, y, q, out var p);
-                bool Same(double exact, Func<double, GasPoint> at, Func<GasPoint, double> f, double step, double scale) =>
-                    Math.Abs((f(at(step)) - f(at(-step))) / (2.0 * step) - exact) < 2e-6 * scale;
+                bool Same(
+                    double exact,
+                    Func<double, GasPoint> at,
+                    Func<GasPoint, double> f,
+                    double step,
+                    double scale
+                ) => Math.Abs((f(at(step)) - f(at(-step))) / (2.0 * step) - exact) < 2e-6 * scale;
                 GasPoint T(double d) => At(t + d, y, q);
                 GasPoint Y(double d) => At(t, y + d, q);
                 GasPoint Q(double d) => At(t, y, q + d);
@@ -132,7 +137,8 @@ public class ThermallyPerfectGasTests
     {
         Kerosene.AtTemperature(800.0, 0.0, 0.01, out var air);
         Kerosene.FuelForTemperature(800.0, air.H, 1600.0, 0.01, 0.99, out var slopes);
-        double F(double h, double t4, double q) => Kerosene.FuelForTemperature(0, air.H + h, 1600 + t4, 0.01 + q, 0.99, out _);
+        double F(double h, double t4, double q) =>
+            Kerosene.FuelForTemperature(0, air.H + h, 1600 + t4, 0.01 + q, 0.99, out _);
         Assert.Equal((F(0, 0.5, 0) - F(0, -0.5, 0)) / 1.0, slopes.T4, 1e-10);
         Assert.Equal((F(500, 0, 0) - F(-500, 0, 0)) / 1000.0, slopes.H3, 1e-13);
         Assert.Equal((F(0, 0, 1e-4) - F(0, 0, -1e-4)) / 2e-4, slopes.Q, 1e-7);

@@ -110,10 +110,27 @@ public class RatingTests
     public void Ratings_that_cannot_be_are_refused()
     {
         Limit[] t41 = [new Limit(Quantity.T41, 1700.0)];
-        Refused("any two of", new() { Name = "x", Thrust = 120e3, FlatTo = 15.0, Limits = t41 });
+        Refused(
+            "any two of",
+            new()
+            {
+                Name = "x",
+                Thrust = 120e3,
+                FlatTo = 15.0,
+                Limits = t41,
+            }
+        );
         Refused("nothing that ends its flat part", new() { Name = "x", FlatTo = 15.0 });
         Refused("neither thrust nor flat_to", new() { Name = "x", Limits = t41 });
-        Refused("not to be had", new() { Name = "x", Thrust = 500e3, FlatTo = 15.0 });
+        Refused(
+            "not to be had",
+            new()
+            {
+                Name = "x",
+                Thrust = 500e3,
+                FlatTo = 15.0,
+            }
+        );
         Refused(
             "its own limit",
             new()
@@ -127,9 +144,6 @@ public class RatingTests
         Assert.Contains("it has 'take-off'", Assert.Throws<RatingException>(() => Twin.Rating("cruise")).Message);
 
         static void Refused(string message, RatingDefinition definition) =>
-            Assert.Contains(
-                message,
-                Assert.Throws<RatingException>(() => new Rating(Twin.Engine, definition)).Message
-            );
+            Assert.Contains(message, Assert.Throws<RatingException>(() => new Rating(Twin.Engine, definition)).Message);
     }
 }
