@@ -49,7 +49,9 @@ internal sealed class Display(bool us, string temperatures)
 
     public string TemperatureUnit => temperatures == "K" ? "K" : "°" + temperatures;
 
-    public string Temperature(double k) =>
+    public string Temperature(double k) => Temperature(k, 1);
+
+    public string Temperature(double k, int digits) =>
         Fixed(
             temperatures switch
             {
@@ -58,7 +60,7 @@ internal sealed class Display(bool us, string temperatures)
                 "R" => k * 1.8,
                 _ => k,
             },
-            1
+            digits
         );
 
     /// <summary>Unit of a difference of temperature.</summary>

@@ -104,7 +104,7 @@ internal static class FlatRatingCommand
             ("flat thrust", $"{d.Force(s.FlatThrust)} {d.ForceUnit}"),
             (
                 "break temperature",
-                $"{d.Temperature(s.BreakTemperature)} {d.TemperatureUnit} (ISA {d.Difference(s.BreakIsaOffset)} {d.DifferenceUnit}), where {PointLayout.Setting(s.BreakLimit, d)}"
+                $"{d.Temperature(s.BreakTemperature, 2)} {d.TemperatureUnit} (ISA {d.Difference(s.BreakIsaOffset)} {d.DifferenceUnit}), where {PointLayout.Setting(s.BreakLimit, d)}"
             ),
             ("lapse beyond it", $"{Display.Percent(s.LapsePerKelvin)} % of the flat thrust per K, over the first 10 K"),
             (
@@ -159,7 +159,7 @@ internal static class FlatRatingCommand
         foreach (var row in s.Rows.Where(r => r.Point is null))
             Layout.Line($"No point at {d.Temperature(row.OutsideTemperature)} {d.TemperatureUnit}: {row.Reason}");
         Layout.Line(
-            $"The stations behind a row: cyclesim point {loaded.Source} --rating {s.Rating} --altitude \"{Display.Fixed(s.PressureAltitude, 0)} m\" --mach {Display.Fixed(s.Mach, 3)} --temperature \"{Display.Fixed(s.BreakTemperature, 1)} K\""
+            $"The stations behind a row: cyclesim point {loaded.Source} --rating {s.Rating} --altitude \"{Display.Fixed(s.PressureAltitude, 0)} m\" --mach {Display.Fixed(s.Mach, 3)} --temperature \"{Display.Fixed(s.BreakTemperature, 2)} K\""
         );
         Layout.Line(
             FormattableString.Invariant(

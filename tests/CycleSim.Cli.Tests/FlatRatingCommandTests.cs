@@ -13,7 +13,7 @@ public class FlatRatingCommandTests
                 "flat thrust",
                 "120.00 kN",
                 "break temperature",
-                "303.1 K",
+                "303.15 K",
                 "N1 %",
                 "EPR",
                 "% of the flat thrust per K",
