@@ -40,6 +40,8 @@ public sealed class InputLayout
             .. definition.Compressors.Select(c => $"flow_factor_{c.Name}"),
             .. definition.Turbines.Select(t => $"efficiency_factor_{t.Name}"),
             .. definition.Turbines.Select(t => $"flow_factor_{t.Name}"),
+            "area_factor_core_nozzle",
+            "area_factor_bypass_nozzle",
         ];
     }
 
@@ -69,6 +71,12 @@ public sealed class InputLayout
     /// <summary>Factor on a turbine's capacity.</summary>
     public int TurbineFlow(int index) => Fixed + _spools + 2 * _ports + 2 * _compressors + _turbines + index;
 
+    /// <summary>Factor on the throat area of the core (or mixed) nozzle.</summary>
+    public int CoreNozzleArea => Count - 2;
+
+    /// <summary>Factor on the throat area of the bypass nozzle.</summary>
+    public int BypassNozzleArea => Count - 1;
+
     /// <summary>The inputs of a new engine with the definition's bleeds and offtakes at a flight condition.</summary>
     public double[] Defaults(EngineDefinition definition, in FlightCondition flight)
     {
@@ -82,7 +90,7 @@ public sealed class InputLayout
             inputs[PortFlow(k)] = definition.AirPorts[k].Flow;
         }
 
-        Array.Fill(inputs, 1.0, CompressorEfficiency(0), 2 * _compressors + 2 * _turbines);
+        Array.Fill(inputs, 1.0, CompressorEfficiency(0), 2 * _compressors + 2 * _turbines + 2);
         return inputs;
     }
 

@@ -130,6 +130,9 @@ public sealed class FlowPath<T>
         Exhaust(gas);
     }
 
+    /// <summary>Position of the fan (0) or core compressor k (k + 1) on its speed line: 0 choke, 1 surge.</summary>
+    public T Position(int index) => Unknowns[BetaOffset + index];
+
     /// <summary>The value of an output of the last pass, in SI.</summary>
     public T Output(Quantity quantity)
     {
@@ -398,14 +401,15 @@ public sealed class FlowPath<T>
             GrossThrustCore = Leave(gas, CoreExit, definition.CoreNozzle, ambient, out CoreJet, out var flow);
             if (_sizing)
                 _engine.CoreNozzleArea = flow.Value;
-            Residuals[_residual++] = flow / _engine.CoreNozzleArea - 1.0;
+            Residuals[_residual++] = flow / (Inputs[_engine.Layout.CoreNozzleArea] * _engine.CoreNozzleArea) - 1.0;
             GrossThrustBypass = T.Constant(0.0);
             if (_engine.HasFan)
             {
                 GrossThrustBypass = Leave(gas, BypassExit, definition.BypassNozzle, ambient, out BypassJet, out flow);
                 if (_sizing)
                     _engine.BypassNozzleArea = flow.Value;
-                Residuals[_residual++] = flow / _engine.BypassNozzleArea - 1.0;
+                Residuals[_residual++] =
+                    flow / (Inputs[_engine.Layout.BypassNozzleArea] * _engine.BypassNozzleArea) - 1.0;
             }
         }
 
@@ -462,7 +466,7 @@ public sealed class FlowPath<T>
         var whole = Leave(gas, Mixed, nozzle, ambient, out CoreJet, out var area);
         if (_sizing)
             _engine.CoreNozzleArea = area.Value;
-        Residuals[_residual++] = area / _engine.CoreNozzleArea - 1.0;
+        Residuals[_residual++] = area / (Inputs[_engine.Layout.CoreNozzleArea] * _engine.CoreNozzleArea) - 1.0;
         GrossThrustCore = whole;
         if (mixer.Effectiveness >= 1.0)
             return;

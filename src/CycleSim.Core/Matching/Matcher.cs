@@ -288,14 +288,54 @@ public sealed class Matcher
         foreach (ref readonly var condition in _problem.Prescribed.AsSpan())
             norm = Math.Max(norm, Store(row++, Relative(condition)));
         if (_problem.FirstOf.Length > 0)
-        {
-            var worst = Relative(_problem.FirstOf[0]);
-            for (var k = 1; k < _problem.FirstOf.Length; k++)
-                worst = Dual.Max(worst, Relative(_problem.FirstOf[k]));
-            norm = Math.Max(norm, Store(row, worst));
-        }
+            norm = Math.Max(norm, Store(row, MostExceeded()));
 
         return norm;
+    }
+
+    /// <summary>The problem last solved.</summary>
+    public MatchingProblem Problem => _problem;
+
+    /// <summary>
+    /// Residuals of the last solution with derivatives with respect to eight inputs from <paramref name="first"/> on, the
+    /// unknowns held; the pass then carries the same derivatives of every output.
+    /// </summary>
+    internal void DifferentiateByInputs(int first, Span<Dual> residuals)
+    {
+        LoadInputs();
+        for (var i = 0; i < Engine.UnknownCount; i++)
+            _path.Unknowns[i] = Dual.Constant(_x[i]);
+        for (var i = 0; i < Dual.Width && first + i < Inputs.Length; i++)
+            _path.Inputs[first + i] = Dual.Variable(Inputs[first + i], i);
+        _path.Evaluate();
+        _path.Residuals.CopyTo(residuals);
+        ClosingResiduals(residuals[(Engine.UnknownCount - 1)..]);
+    }
+
+    /// <summary>The same with respect to the unknowns and freed inputs.</summary>
+    internal void DifferentiateByUnknowns(Span<Dual> residuals)
+    {
+        LoadInputs();
+        EvaluateAt(_x);
+        _path.Residuals.CopyTo(residuals);
+        ClosingResiduals(residuals[(Engine.UnknownCount - 1)..]);
+    }
+
+    private void ClosingResiduals(Span<Dual> residuals)
+    {
+        var row = 0;
+        foreach (ref readonly var condition in _problem.Prescribed.AsSpan())
+            residuals[row++] = Relative(condition);
+        if (_problem.FirstOf.Length > 0)
+            residuals[row] = MostExceeded();
+    }
+
+    private Dual MostExceeded()
+    {
+        var worst = Relative(_problem.FirstOf[0]);
+        for (var k = 1; k < _problem.FirstOf.Length; k++)
+            worst = Dual.Max(worst, Relative(_problem.FirstOf[k]));
+        return worst;
     }
 
     private Dual Relative(in Limit condition)

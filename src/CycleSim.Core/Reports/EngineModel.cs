@@ -99,6 +99,9 @@ public sealed class EngineModel
         return _reporter.Report(rating.Matcher, outcome, flight, setting);
     }
 
+    /// <summary>Influence coefficients of the point last asked for by <see cref="At"/> or <see cref="DesignPoint"/>.</summary>
+    public Influence InfluenceOfLastPoint() => Influence.At(_matcher);
+
     private OperatingPoint Report(MatchOutcome outcome, in FlightCondition flight, Limit setting) =>
         _reporter.Report(_matcher, outcome, flight, setting);
 

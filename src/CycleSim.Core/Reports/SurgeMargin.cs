@@ -1,4 +1,5 @@
 using CycleSim.Engine;
+using CycleSim.Scalars;
 
 namespace CycleSim.Reports;
 
@@ -29,6 +30,26 @@ public static class SurgeMargin
         }
 
         return (Point(compressor, low, 1.0).Ratio / ratio - 1.0, constantSpeed);
+    }
+
+    /// <summary>Margin at constant corrected speed of compressor <paramref name="index"/> (0: fan) of a pass, with its derivatives.</summary>
+    public static T ConstantSpeed<T>(SizedEngine engine, FlowPath<T> path, int index)
+        where T : struct, IScalar<T>
+    {
+        var compressor = index == 0 ? engine.Fan! : engine.Compressors[index - 1];
+        var beta = path.Position(index);
+        var speed = path.CorrectedSpeed[index];
+        return Load(compressor, speed, T.Constant(1.0)) / Load(compressor, speed, beta) - 1.0;
+    }
+
+    // Pressure ratio over corrected flow: rises along a speed line towards surge.
+    private static T Load<T>(ScaledCompressor compressor, in T speed, in T beta)
+        where T : struct, IScalar<T>
+    {
+        compressor.Map.Read(speed.Value, beta.Value, out var m);
+        var flow = T.Chain(m.Value[0], speed, m.PerSpeed[0], beta, m.PerBeta[0]) * compressor.FlowScale;
+        var rise = T.Chain(m.Value[1], speed, m.PerSpeed[1], beta, m.PerBeta[1]) * compressor.RiseScale;
+        return (rise + 1.0) / flow;
     }
 
     private static (double Flow, double Ratio) Point(ScaledCompressor compressor, double speed, double beta)
