@@ -48,6 +48,12 @@ internal sealed class CommonOptions
         Description = "Power taken from a spool, for instance \"high=120 kW\"; may be repeated.",
     };
 
+    public readonly Option<string[]> Worn = new("--worn")
+    {
+        Description =
+            "Change of a component's efficiency or flow against new, for instance \"hpt efficiency=-2 %\" or \"hpc flow=-1.5 %\"; may be repeated.",
+    };
+
     public readonly Option<string> UnitSystem = new Option<string>("--units")
     {
         Description = "si or us (ft, lbf, lb/h).",
@@ -72,7 +78,7 @@ internal sealed class CommonOptions
             command.Add(Temperature);
         }
 
-        foreach (var option in new Option[] { Humidity, Bleed, Offtake, UnitSystem, Temperatures, Json })
+        foreach (var option in new Option[] { Humidity, Bleed, Offtake, Worn, UnitSystem, Temperatures, Json })
             command.Add(option);
     }
 
@@ -173,11 +179,52 @@ internal sealed class CommonOptions
             changes.Add((engine.Layout.PowerOfftake(spool), Positive("--offtake " + name, value, Dimension.Power)));
         }
 
+        foreach (var text in result.GetValue(Worn) ?? [])
+        {
+            var (name, value) = Pair("--worn", text, "hpt efficiency=-2 %");
+            var change = Share("--worn " + name, value);
+            if (change is not (> -0.5 and < 0.5))
+                throw new UsageException($"--worn {name}: '{value}' must lie between -50 and 50 %.");
+            changes.Add((HealthInput(engine, name), 1.0 + change));
+        }
+
         return inputs =>
         {
             foreach (var (index, value) in changes)
                 inputs[index] = value;
         };
+    }
+
+    /// <summary>Whether any condition or load is given beside the engine.</summary>
+    public bool GivesConditions(ParseResult result) =>
+        new[] { Altitude, Mach, TrueAirspeed, CalibratedAirspeed, Isa, Temperature, Humidity }.Any(o =>
+            result.GetValue(o) is not null
+        ) || new[] { Bleed, Offtake, Worn }.Any(o => result.GetValue(o) is { Length: > 0 });
+
+    private static int HealthInput(SizedEngine engine, string name)
+    {
+        var words = name.Split(' ', StringSplitOptions.RemoveEmptyEntries);
+        if (words is [var component, "efficiency" or "flow"])
+        {
+            var efficiency = words[1] == "efficiency";
+            var layout = engine.Layout;
+            if (component == "fan" && engine.HasFan)
+                return efficiency ? layout.CompressorEfficiency(0) : layout.CompressorFlow(0);
+            for (var k = 0; k < engine.Compressors.Length; k++)
+                if (engine.Compressors[k].Name == component)
+                    return efficiency ? layout.CompressorEfficiency(k + 1) : layout.CompressorFlow(k + 1);
+            for (var k = 0; k < engine.Turbines.Length; k++)
+                if (engine.Turbines[k].Definition.Name == component)
+                    return efficiency ? layout.TurbineEfficiency(k) : layout.TurbineFlow(k);
+        }
+
+        var known = engine
+            .Compressors.Select(c => c.Name)
+            .Concat(engine.Turbines.Select(t => t.Definition.Name))
+            .Concat(engine.HasFan ? ["fan"] : []);
+        throw new UsageException(
+            $"--worn: '{name}' is not a component and 'efficiency' or 'flow'; this engine has {string.Join(", ", known)}."
+        );
     }
 
     public static Option<string?> Text(string name, string description) => new(name) { Description = description };

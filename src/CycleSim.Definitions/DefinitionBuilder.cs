@@ -75,6 +75,7 @@ internal sealed class DefinitionBuilder(List<TomlTableNode> nodes, string source
                     PressureRatio = c.Number("pressure_ratio"),
                     Efficiency = Efficiency(c, ""),
                     InletDuctLoss = c.Number("inlet_duct_loss", 0.0),
+                    ReynoldsExponent = c.Number("reynolds_exponent", 0.0),
                 }),
             ],
             Combustor = new CombustorDefinition
@@ -90,6 +91,7 @@ internal sealed class DefinitionBuilder(List<TomlTableNode> nodes, string source
                     Spool = t.Text("spool"),
                     Efficiency = Efficiency(t, ""),
                     InletDuctLoss = t.Number("inlet_duct_loss", 0.0),
+                    ReynoldsExponent = t.Number("reynolds_exponent", 0.0),
                     Stages = (int)t.Number("stages", 1.0),
                     ChokingRatio = t.Number("choking_ratio", 0.0),
                     BestVelocityRatio = t.Number("best_velocity_ratio", 1.08),
@@ -192,6 +194,7 @@ internal sealed class DefinitionBuilder(List<TomlTableNode> nodes, string source
             HubPressureRatio = fan.Number("hub_pressure_ratio", fan.Number("pressure_ratio")),
             HubEfficiency = hub,
             GearRatio = fan.Number("gear_ratio", 1.0),
+            ReynoldsExponent = fan.Number("reynolds_exponent", 0.0),
         };
     }
 

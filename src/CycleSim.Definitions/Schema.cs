@@ -328,6 +328,15 @@ internal static class Schema
                     Example: "0.91"
                 ),
                 new(
+                    "reynolds_exponent",
+                    Dimension.Number,
+                    "n in (1 - efficiency) ~ Re^-n against the design point; 0 leaves the effect out, 0.1 to 0.2 is usual.",
+                    0,
+                    0.5,
+                    Default: "0",
+                    Example: "0.1"
+                ),
+                new(
                     "gear_ratio",
                     Dimension.Number,
                     "Fan speed over the speed of its spool, below 1 behind a reduction gear.",
@@ -373,6 +382,15 @@ internal static class Schema
                     1,
                     LeastAllowed: false,
                     Example: "0.905"
+                ),
+                new(
+                    "reynolds_exponent",
+                    Dimension.Number,
+                    "n in (1 - efficiency) ~ Re^-n against the design point; 0 leaves the effect out, 0.1 to 0.2 is usual.",
+                    0,
+                    0.5,
+                    Default: "0",
+                    Example: "0.1"
                 ),
                 new(
                     "inlet_duct_loss",
@@ -437,6 +455,15 @@ internal static class Schema
                     1,
                     LeastAllowed: false,
                     Example: "0.88"
+                ),
+                new(
+                    "reynolds_exponent",
+                    Dimension.Number,
+                    "n in (1 - efficiency) ~ Re^-n against the design point; 0 leaves the effect out, 0.1 to 0.2 is usual.",
+                    0,
+                    0.5,
+                    Default: "0",
+                    Example: "0.1"
                 ),
                 new(
                     "inlet_duct_loss",

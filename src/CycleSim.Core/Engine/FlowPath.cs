@@ -345,13 +345,28 @@ public sealed class FlowPath<T>
             TurbineCharacteristic.EfficiencyRatio(velocityRatio, turbine.Definition.BestVelocityRatio)
             * Inputs[_engine.Layout.TurbineEfficiency(k)]
             * turbine.DesignEfficiency;
+        var capacityFactor = Inputs[_engine.Layout.TurbineFlow(k)];
+        if (turbine.Definition.ReynoldsExponent > 0.0)
+        {
+            var reynolds = Reynolds.Index(inlet);
+            if (_sizing)
+                turbine.DesignReynolds = reynolds.Value;
+            Reynolds.Apply(
+                TurbineEfficiency[k],
+                reynolds / turbine.DesignReynolds,
+                turbine.Definition.ReynoldsExponent,
+                out TurbineEfficiency[k],
+                out var flow
+            );
+            capacityFactor *= flow;
+        }
+
         Turbine.Expand(gas, inlet, work, TurbineEfficiency[k], out TurbineRotorOutlet[k], out ExpansionRatio[k]);
 
         var choked = TurbineCharacteristic.Capacity(ExpansionRatio[k], turbine.CriticalRatio);
         if (_sizing)
             turbine.Capacity = correctedFlow.Value / choked.Value;
-        Residuals[_residual++] =
-            correctedFlow / (choked * Inputs[_engine.Layout.TurbineFlow(k)] * turbine.Capacity) - 1.0;
+        Residuals[_residual++] = correctedFlow / (choked * capacityFactor * turbine.Capacity) - 1.0;
 
         ref var outlet = ref TurbineOutlet[k];
         outlet = TurbineRotorOutlet[k];
@@ -498,6 +513,19 @@ public sealed class FlowPath<T>
         correctedFlow = flowFactor * Lane(m, 0, compressor.FlowScale, speed, beta);
         rise = Lane(m, 1, compressor.RiseScale, speed, beta);
         efficiency = efficiencyFactor * Lane(m, 2, compressor.EfficiencyScale, speed, beta);
+        if (compressor.ReynoldsExponent <= 0.0)
+            return;
+        var reynolds = Reynolds.Index(inlet);
+        if (_sizing)
+            compressor.DesignReynolds = reynolds.Value;
+        Reynolds.Apply(
+            efficiency,
+            reynolds / compressor.DesignReynolds,
+            compressor.ReynoldsExponent,
+            out efficiency,
+            out var flow
+        );
+        correctedFlow *= flow;
     }
 
     [MethodImpl(MethodImplOptions.AggressiveInlining)]

@@ -15,10 +15,18 @@ public sealed class SizedEngine
         HasFan = definition.Fan is not null;
         int Spool(string name) => definition.Spools.Select(s => s.Name).ToList().IndexOf(name);
 
-        Fan = definition.Fan is { } fan ? new ScaledCompressor("fan", Spool(fan.Spool), fan.PressureRatio) : null;
+        Fan = definition.Fan is { } fan
+            ? new ScaledCompressor("fan", Spool(fan.Spool), fan.PressureRatio)
+            {
+                ReynoldsExponent = fan.ReynoldsExponent,
+            }
+            : null;
         Compressors =
         [
-            .. definition.Compressors.Select(c => new ScaledCompressor(c.Name, Spool(c.Spool), c.PressureRatio)),
+            .. definition.Compressors.Select(c => new ScaledCompressor(c.Name, Spool(c.Spool), c.PressureRatio)
+            {
+                ReynoldsExponent = c.ReynoldsExponent,
+            }),
         ];
         Turbines = [.. definition.Turbines.Select(t => new ScaledTurbine(t, Spool(t.Spool)))];
         Ports = [.. definition.AirPorts.Select(p => new SizedPort(p, definition))];
@@ -110,6 +118,10 @@ public sealed class ScaledCompressor(string name, int spool, double designPressu
 
     /// <summary>Corrected flow at design, m2.</summary>
     internal double DesignFlow { get; set; } = 1.0;
+
+    internal double ReynoldsExponent { get; init; }
+
+    internal double DesignReynolds { get; set; } = 1.0;
 }
 
 /// <summary>A turbine with its capacity and work at design.</summary>
@@ -135,6 +147,8 @@ public sealed class ScaledTurbine
     public double Capacity { get; internal set; } = 1.0;
 
     internal double DesignFlow { get; set; } = 1.0;
+
+    internal double DesignReynolds { get; set; } = 1.0;
 
     /// <summary>Work at design, J/kg, at speed 1, and the isentropic efficiency there.</summary>
     public double DesignWork { get; internal set; } = 1.0;
