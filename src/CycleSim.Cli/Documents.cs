@@ -68,7 +68,7 @@ internal static class Documents
         return document;
     }
 
-    private static JsonObject Provenance(LoadedDefinition loaded) =>
+    public static JsonObject Provenance(LoadedDefinition loaded) =>
         new()
         {
             ["caution"] = Layout.Caution,
@@ -221,9 +221,9 @@ internal static class Documents
             },
         };
 
-    private static JsonArray Array<T>(IEnumerable<T> items, Func<T, JsonObject> convert) =>
+    public static JsonArray Array<T>(IEnumerable<T> items, Func<T, JsonObject> convert) =>
         new([.. items.Select(convert)]);
 
     // JSON has no word for what is not a number.
-    private static JsonNode? Number(double value) => double.IsFinite(value) ? JsonValue.Create(value) : null;
+    public static JsonNode? Number(double value) => double.IsFinite(value) ? JsonValue.Create(value) : null;
 }

@@ -8,7 +8,7 @@ using CycleSim.Reports;
 Console.OutputEncoding = new System.Text.UTF8Encoding(false);
 var root = new RootCommand(
     """
-    Turbofan performance from a definition file: operating points, flat ratings, influence coefficients.
+    Turbofan performance from a definition file: operating points, flat ratings, influence coefficients, surge margins.
 
     Examples:
       cyclesim engines
@@ -16,6 +16,7 @@ var root = new RootCommand(
       cyclesim point velda-27 --altitude "35000 ft" --mach 0.78 --isa "10 K" --rating max-climb
       cyclesim flat-rating velda-27 --altitude "6000 ft" --units us
       cyclesim influence velda-27 --altitude "35000 ft" --mach 0.78 --thrust "22 kN"
+      cyclesim surge-margin velda-27
       cyclesim point my-engine.toml --altitude "0 m" --mach 0 --thrust "100 kN" --json
 
     Exit codes: 0 done, 2 command line not understood, 3 definition file refused, 4 no solution, 1 anything else.
@@ -27,6 +28,7 @@ var root = new RootCommand(
     PointCommand.Create(),
     FlatRatingCommand.Create(),
     InfluenceCommand.Create(),
+    SurgeMarginCommand.Create(),
 };
 
 var parsed = root.Parse(args);

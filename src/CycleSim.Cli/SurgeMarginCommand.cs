@@ -1,0 +1,153 @@
+using System.CommandLine;
+using System.Text.Json.Nodes;
+using CycleSim.Definitions;
+using CycleSim.Reports;
+using CycleSim.Studies;
+
+namespace CycleSim.Cli;
+
+/// <summary>Where each compressor is nearest to surge over the envelope, against what it needs.</summary>
+internal static class SurgeMarginCommand
+{
+    public static Command Create()
+    {
+        var common = new CommonOptions();
+        var rating = CommonOptions.Text(
+            "--rating",
+            "Rating that is the highest power surveyed; the first one without it."
+        );
+        var command = new Command(
+            "surge-margin",
+            """
+            Surge margins over the envelope and from a rating down to a tenth of its thrust: where each compressor is nearest to
+            surge, and a budget of what it needs.
+
+            Examples:
+              cyclesim surge-margin velda-27
+              cyclesim surge-margin velda-27 --worn "hpc efficiency=-3 %" --worn "hpc flow=-2 %"
+              cyclesim surge-margin velda-27 --bleed "handling-bleed=0 %"
+            """
+        )
+        {
+            common.Engine,
+            rating,
+            common.Bleed,
+            common.Offtake,
+            common.Worn,
+            common.UnitSystem,
+            common.Temperatures,
+            common.Json,
+        };
+        command.SetAction(result =>
+        {
+            var loaded = EngineLibrary.Load(result.GetRequiredValue(common.Engine));
+            var model = new EngineModel(loaded.Engine);
+            if (loaded.Engine.Ratings.Count == 0)
+                throw new UsageException(
+                    $"{loaded.Source} defines no [[rating]]; the survey needs one for its highest power."
+                );
+            var survey = SurgeSurvey.Run(
+                model,
+                result.GetValue(rating) ?? loaded.Engine.Ratings[0].Name,
+                loads: common.Loads(result, model.Engine)
+            );
+            if (result.GetValue(common.Json))
+                Documents.Print(Document(survey, loaded));
+            else
+                Print(survey, loaded, common.Display(result));
+            return ExitCode.Done;
+        });
+        return command;
+    }
+
+    private static void Print(SurgeSurveyResult s, LoadedDefinition loaded, Display d)
+    {
+        Layout.Line(
+            $"{s.Engine}, from rating {s.Rating} down to a tenth of its thrust: {s.Points} points, {s.WithoutSolution.Count} without solution"
+        );
+        Layout.Line();
+        Layout.Table(
+            "Thinnest surge margin of each compressor (as pressure ratio to the surge line at constant flow; as PR/W at constant speed)",
+            [
+                "",
+                "flow %",
+                "speed %",
+                "needed %",
+                "slack pt",
+                $"altitude {d.AltitudeUnit}",
+                "Mach",
+                $"ISA {d.DifferenceUnit}",
+                "thrust of rating %",
+                "corrected speed %",
+            ],
+            s.Budgets.Select(b =>
+                new[]
+                {
+                    b.Compressor,
+                    Display.Percent(b.Thinnest.MarginConstantFlow, 1),
+                    Display.Percent(b.Thinnest.MarginConstantSpeed, 1),
+                    Display.Percent(b.Required, 1),
+                    Display.Percent(b.Slack, 1),
+                    d.Altitude(b.Thinnest.PressureAltitude),
+                    Display.Fixed(b.Thinnest.Mach, 2),
+                    d.Difference(b.Thinnest.IsaOffset),
+                    Display.Percent(b.Thinnest.ThrustShare, 0),
+                    Display.Percent(b.Thinnest.RelativeCorrectedSpeed, 1),
+                }
+            )
+        );
+        Layout.Table(
+            "Needed, % of the working line's pressure ratio (random ones by root of the sum of squares)",
+            ["", .. s.Budgets[0].Allowances.Select(a => a.Random ? a.Name + " (random)" : a.Name)],
+            s.Budgets.Select(b =>
+                (string[])[b.Compressor, .. b.Allowances.Select(a => Display.Percent(a.Allowance, 1))]
+            )
+        );
+        foreach (var reason in s.WithoutSolution.Take(5))
+            Layout.Line("No point: " + reason);
+        if (s.WithoutSolution.Count > 5)
+            Layout.Line($"... and {s.WithoutSolution.Count - 5} more; --json lists all.");
+        Layout.Line(
+            "Allowances are textbook practice from memory; margins are as good as the compressor maps, steady state."
+        );
+        Layout.Line($"Definition {loaded.Source}, SHA-256 {loaded.Hash[..16]}, cyclesim {Documents.Version}.");
+        Layout.Line(Layout.Caution);
+    }
+
+    private static JsonObject Document(SurgeSurveyResult s, LoadedDefinition loaded)
+    {
+        var document = Documents.Provenance(loaded);
+        document["rating"] = s.Rating;
+        document["points_solved"] = s.Points;
+        document["points_without_solution"] = new JsonArray([.. s.WithoutSolution.Select(r => JsonValue.Create(r))]);
+        document["compressors"] = Documents.Array(
+            s.Budgets,
+            b => new JsonObject
+            {
+                ["name"] = b.Compressor,
+                ["margin_required"] = Documents.Number(b.Required),
+                ["margin_slack"] = Documents.Number(b.Slack),
+                ["allowances"] = Documents.Array(
+                    b.Allowances,
+                    a => new JsonObject
+                    {
+                        ["name"] = a.Name,
+                        ["allowance"] = Documents.Number(a.Allowance),
+                        ["random"] = a.Random,
+                    }
+                ),
+                ["thinnest"] = new JsonObject
+                {
+                    ["surge_margin_constant_flow"] = Documents.Number(b.Thinnest.MarginConstantFlow),
+                    ["surge_margin_constant_speed"] = Documents.Number(b.Thinnest.MarginConstantSpeed),
+                    ["pressure_altitude_m"] = Documents.Number(b.Thinnest.PressureAltitude),
+                    ["mach"] = Documents.Number(b.Thinnest.Mach),
+                    ["isa_offset_K"] = Documents.Number(b.Thinnest.IsaOffset),
+                    ["thrust_share"] = Documents.Number(b.Thinnest.ThrustShare),
+                    ["relative_corrected_speed"] = Documents.Number(b.Thinnest.RelativeCorrectedSpeed),
+                },
+            }
+        );
+        return document;
+    }
+}
