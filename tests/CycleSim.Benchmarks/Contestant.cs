@@ -73,10 +73,11 @@ internal sealed class MatcherContestant(Sweep sweep, bool warm) : Contestant("Ma
     protected override bool Solve(SweepPoint point, double[] start, double[] solution, ref Tally tally)
     {
         point.Inputs.CopyTo(_matcher.Inputs, 0);
-        var outcome = _matcher.Solve(point.Problem, start);
+        var outcome = Warm ? _matcher.SolveNext(point.Problem) : _matcher.Solve(point.Problem, start);
         _matcher.Solution.CopyTo(solution);
         tally.Iterations += outcome.Iterations;
-        tally.DualEvaluations += outcome.Evaluations;
+        tally.DualEvaluations += outcome.Jacobians;
+        tally.PlainEvaluations += outcome.Passes;
         return outcome.Solved;
     }
 }

@@ -33,10 +33,11 @@ internal sealed class Measurement(Contestant contestant)
     public void RunRound()
     {
         var bytes = GC.GetAllocatedBytesForCurrentThread();
-        var watch = Stopwatch.StartNew();
+        var start = Stopwatch.GetTimestamp();
         Tally = Contestant.RunSweep();
-        Seconds.Add(watch.Elapsed.TotalSeconds);
+        var elapsed = Stopwatch.GetElapsedTime(start);
         Bytes = GC.GetAllocatedBytesForCurrentThread() - bytes;
+        Seconds.Add(elapsed.TotalSeconds);
     }
 
     /// <summary>Median over the rounds of this contestant's time over another's in the same round.</summary>

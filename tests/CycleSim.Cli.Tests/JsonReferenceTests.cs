@@ -16,6 +16,7 @@ public class JsonReferenceTests
         Collect(CommandLine.Run("flat-rating", "velda-27", "--json").Json, names);
         Collect(CommandLine.Run("point", "velda-27", "--design", "--json").Json, names);
         Collect(CommandLine.Run("engines", "--json").Json, names);
+        Collect(CommandLine.Run("surge-margin", "velda-27", "--json").Json, names);
         Assert.True(names.Count > 80, $"{names.Count} names");
         Assert.All(names, name => Assert.Contains($"`{name}`", page));
     }

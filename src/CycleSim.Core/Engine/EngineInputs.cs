@@ -71,6 +71,17 @@ public sealed class InputLayout
     /// <summary>Factor on a turbine's capacity.</summary>
     public int TurbineFlow(int index) => Fixed + _spools + 2 * _ports + 2 * _compressors + _turbines + index;
 
+    /// <summary>Size that makes an input of order one: freed inputs are solved for in this unit.</summary>
+    public double Scale(int input) =>
+        input switch
+        {
+            Temperature => 288.15,
+            Pressure => 101325.0,
+            SpecificHumidity => 0.05,
+            _ when input >= PowerOfftake(0) && input < PortFraction(0) => 1e6,
+            _ => 1.0,
+        };
+
     /// <summary>Factor on the throat area of the core (or mixed) nozzle.</summary>
     public int CoreNozzleArea => Count - 2;
 

@@ -42,11 +42,10 @@ public sealed class FlowPath<T>
         _portFlow = new T[engine.Ports.Length];
         _portEnthalpy = new T[engine.Ports.Length];
         CompressorInlet = new FlowState<T>[engine.Compressors.Length];
-        CompressorOutlet = new FlowState<T>[engine.Compressors.Length];
         CompressorDelivery = new FlowState<T>[engine.Compressors.Length];
         CorrectedSpeed = new T[engine.Compressors.Length + 1];
         TurbineInlet = new FlowState<T>[engine.Turbines.Length];
-        TurbineRotorOutlet = new FlowState<T>[engine.Turbines.Length];
+        TurbineWork = new T[engine.Turbines.Length];
         TurbineOutlet = new FlowState<T>[engine.Turbines.Length];
         ExpansionRatio = new T[engine.Turbines.Length];
         TurbineEfficiency = new T[engine.Turbines.Length];
@@ -65,15 +64,12 @@ public sealed class FlowPath<T>
         FanTip,
         FanHub,
         BypassExit,
-        CombustorInlet,
         CombustorExit,
         CoreExit,
         Mixed;
 
     /// <summary>Core compressors: inlet behind its duct, outlet before and after what is taken at its end.</summary>
     public FlowState<T>[] CompressorInlet { get; }
-
-    public FlowState<T>[] CompressorOutlet { get; }
 
     public FlowState<T>[] CompressorDelivery { get; }
 
@@ -83,9 +79,13 @@ public sealed class FlowPath<T>
     /// <summary>Turbines: rotor inlet (vane air mixed in), rotor outlet, outlet with rotor air mixed in.</summary>
     public FlowState<T>[] TurbineInlet { get; }
 
-    public FlowState<T>[] TurbineRotorOutlet { get; }
-
     public FlowState<T>[] TurbineOutlet { get; }
+
+    /// <summary>Work of each turbine, J per kg of its rotor inlet flow.</summary>
+    public T[] TurbineWork { get; }
+
+    /// <summary>What enters the combustor.</summary>
+    public ref readonly FlowState<T> CombustorInlet => ref CompressorDelivery[^1];
 
     public T[] ExpansionRatio { get; }
 
@@ -230,18 +230,16 @@ public sealed class FlowPath<T>
         else
             Residuals[_residual++] = inlet.W / mapFlow - 1.0;
 
-        ref var outlet = ref CompressorOutlet[k];
+        ref var outlet = ref CompressorDelivery[k];
         Compressor.Compress(gas, inlet, rise + 1.0, efficiency, out outlet);
         var power = inlet.W * (outlet.H - inlet.H);
-        ref var delivery = ref CompressorDelivery[k];
-        delivery = outlet;
         for (var i = 0; i < _engine.Ports.Length; i++)
         {
             if (_engine.Ports[i].Compressor != k)
                 continue;
             TakeAir(gas, i, k, inlet, outlet);
             power -= _portFlow[i] * (outlet.H - _portEnthalpy[i]);
-            delivery.W -= _portFlow[i];
+            outlet.W -= _portFlow[i];
         }
 
         _spoolPower[compressor.Spool] += power;
@@ -296,22 +294,16 @@ public sealed class FlowPath<T>
 
     private void Burn(in GasRelations<T> gas)
     {
-        CombustorInlet = CompressorDelivery[^1];
+        ref var air = ref CompressorDelivery[^1];
         var combustor = _engine.Definition.Combustor;
-        var correctedFlow = Duct.CorrectedFlow(gas, CombustorInlet);
+        var correctedFlow = Duct.CorrectedFlow(gas, air);
         if (_sizing)
             _engine.CombustorFlow = correctedFlow.Value;
         var pressureRatio = Duct.PressureRatio(combustor.PressureLoss, correctedFlow / _engine.CombustorFlow);
         var t4 = Unknowns[^1] * 1000.0;
-        Combustor.Burn(gas, CombustorInlet, t4, pressureRatio, combustor.Efficiency, out CombustorExit, out FuelFlow);
+        Combustor.Burn(gas, air, t4, pressureRatio, combustor.Efficiency, out CombustorExit, out FuelFlow);
         if (_sizing)
-            DesignChecks.CheckCombustor(
-                _engine.Definition,
-                CombustorInlet.W.Value,
-                CombustorInlet.Tt.Value,
-                t4.Value,
-                FuelFlow.Value
-            );
+            DesignChecks.CheckCombustor(_engine.Definition, air.W.Value, air.Tt.Value, t4.Value, FuelFlow.Value);
     }
 
     private void RunTurbine(in GasRelations<T> gas, int k)
@@ -361,16 +353,15 @@ public sealed class FlowPath<T>
             capacityFactor *= flow;
         }
 
-        Turbine.Expand(gas, inlet, work, TurbineEfficiency[k], out TurbineRotorOutlet[k], out ExpansionRatio[k]);
+        Turbine.Expand(gas, inlet, work, TurbineEfficiency[k], out TurbineOutlet[k], out ExpansionRatio[k]);
+        TurbineWork[k] = work;
 
         var choked = TurbineCharacteristic.Capacity(ExpansionRatio[k], turbine.CriticalRatio);
         if (_sizing)
             turbine.Capacity = correctedFlow.Value / choked.Value;
         Residuals[_residual++] = correctedFlow / (choked * capacityFactor * turbine.Capacity) - 1.0;
 
-        ref var outlet = ref TurbineOutlet[k];
-        outlet = TurbineRotorOutlet[k];
-        MixReturning(gas, ref outlet, k, AirDestination.Rotor);
+        MixReturning(gas, ref TurbineOutlet[k], k, AirDestination.Rotor);
     }
 
     private void MixReturning(in GasRelations<T> gas, ref FlowState<T> stream, int turbine, AirDestination destination)

@@ -26,11 +26,18 @@ public enum MatchStatus
 }
 
 /// <summary>Outcome of one match; the numbers are in the matcher.</summary>
+/// <param name="Status">how it ended</param>
+/// <param name="Residual">largest relative imbalance</param>
+/// <param name="Iterations">Newton steps, those of failed starts included</param>
+/// <param name="Jacobians">passes with derivatives</param>
+/// <param name="Passes">passes without</param>
+/// <param name="Culprit">component or equation that stood in the way; -1 without</param>
 public readonly record struct MatchOutcome(
     MatchStatus Status,
     double Residual,
     int Iterations,
-    int Evaluations,
+    int Jacobians,
+    int Passes,
     int Culprit
 )
 {

@@ -22,7 +22,11 @@ public sealed class Matcher
 
     private const int MostIterations = 30;
 
-    private readonly FlowPath<Dual> _path;
+    // Below this imbalance one or two steps with the Jacobian at hand are expected to solve the point.
+    private const double NearlySolved = 2e-4;
+
+    private readonly Equations<Dual> _differentiated;
+    private readonly Equations<Plain> _plain;
     private readonly double[] _x = new double[Dual.Width];
     private readonly double[] _trial = new double[Dual.Width];
     private readonly double[] _largestStep = new double[Dual.Width];
@@ -35,13 +39,19 @@ public sealed class Matcher
     private readonly double[] _wantedInputs;
     private readonly double[] _coldStart = new double[Dual.Width];
     private readonly double[] _pathStart = new double[Dual.Width];
+    private readonly double[] _firstStep = new double[Dual.Width];
+    private readonly double[] _predicted = new double[Dual.Width];
+    private readonly double[] _curvature = new double[Dual.Width];
+    private bool _curvatureKnown;
     private int _n;
+    private bool _solved;
     private MatchingProblem _problem;
 
     public Matcher(SizedEngine engine)
     {
         Engine = engine;
-        _path = new FlowPath<Dual>(engine);
+        _differentiated = new Equations<Dual>(engine);
+        _plain = new Equations<Plain>(engine);
         Inputs = (double[])engine.DesignInputs.Clone();
         _wantedInputs = new double[Inputs.Length];
         _problem = MatchingProblem.For(Quantity.T4, engine.Definition.Design.CombustorExitTemperature);
@@ -57,8 +67,8 @@ public sealed class Matcher
     /// <summary>Unknowns of the last solution followed by the freed inputs (scaled).</summary>
     public ReadOnlySpan<double> Solution => _x.AsSpan(0, _n);
 
-    /// <summary>The differentiated pass at the last point evaluated.</summary>
-    public FlowPath<Dual> Path => _path;
+    /// <summary>The pass at the last solution, or where the last attempt ended.</summary>
+    public FlowPath<Plain> Path => _plain.Path;
 
     /// <summary>Solves from the design point.</summary>
     public MatchOutcome Solve(MatchingProblem problem) => Solve(problem, Engine.DesignUnknowns);
@@ -67,31 +77,134 @@ public sealed class Matcher
     public MatchOutcome Solve(MatchingProblem problem, ReadOnlySpan<double> start)
     {
         Prepare(problem, start);
-        Array.Clear(_shift);
-        var outcome = Newton();
-        if (outcome.Status == MatchStatus.NotConverged && ColdStart.Guess(Engine, Inputs, problem, _coldStart))
+        return Finish(Newton());
+    }
+
+    /// <summary>
+    /// Solves from the solution just found: the quickest way along a line of neighbouring points. The last Jacobian gives
+    /// the first step; where that step goes on as the one before it did, what curvature added there is added here too. From
+    /// the design point where nothing has been solved yet.
+    /// </summary>
+    public MatchOutcome SolveNext(MatchingProblem problem)
+    {
+        if (!_solved)
+            return Solve(problem);
+        var sameConditions = Rescale(problem);
+        Prepare(problem, _x.AsSpan(0, Engine.UnknownCount));
+        if (!sameConditions || !Predict(out var passes))
+            return Finish(Newton());
+        var outcome = Finish(Newton());
+        _curvatureKnown = outcome.Solved;
+        for (var i = 0; i < _n; i++)
+            _curvature[i] = _x[i] - _predicted[i];
+        return outcome with { Iterations = outcome.Iterations + 1, Passes = outcome.Passes + passes };
+    }
+
+    /// <summary>Moves to where the last Jacobian, and the curvature met on the last step, expect the solution.</summary>
+    private bool Predict(out int passes)
+    {
+        passes = 0;
+        // With the inputs as they were, the pass at the last solution still stands; only what it is compared with has changed.
+        if (_plain.Load(Inputs))
         {
-            var (iterations, evaluations) = (outcome.Iterations, outcome.Evaluations);
-            Prepare(problem, _coldStart);
-            outcome = Newton();
-            outcome = outcome with
-            {
-                Iterations = outcome.Iterations + iterations,
-                Evaluations = outcome.Evaluations + evaluations,
-            };
+            EvaluatePlain(_x);
+            passes = 1;
+        }
+        else
+        {
+            _plain.Close(_problem);
+            StorePlain();
+        }
+
+        Span<double> step = stackalloc double[Dual.Width];
+        if (!NewtonStep(step, out var share) || share < 1.0)
+            return false;
+        double along = 0.0,
+            last = 0.0,
+            whole = 0.0;
+        for (var i = 0; i < _n; i++)
+        {
+            along += step[i] * _firstStep[i];
+            last += _firstStep[i] * _firstStep[i];
+            whole += step[i] * step[i];
+        }
+
+        // Curvature grows with the square of the step; it is carried on only where the direction stays about the same.
+        var stretch = along / last;
+        var carry = _curvatureKnown && stretch > 0.0 && along * along > 0.9 * last * whole ? stretch * stretch : 0.0;
+        for (var i = 0; i < _n; i++)
+        {
+            _firstStep[i] = step[i];
+            _predicted[i] = _x[i] - step[i];
+            _x[i] = Math.Clamp(_predicted[i] + (carry > 0.0 ? carry * _curvature[i] : 0.0), _lower[i], _upper[i]);
+        }
+
+        return true;
+    }
+
+    private MatchOutcome Finish(MatchOutcome outcome)
+    {
+        if (outcome.Status == MatchStatus.NotConverged)
+        {
+            Prepare(_problem, Engine.DesignUnknowns);
+            outcome = After(outcome, Newton());
+        }
+
+        if (outcome.Status == MatchStatus.NotConverged && ColdStart.Guess(Engine, Inputs, _problem, _coldStart))
+        {
+            Prepare(_problem, _coldStart);
+            outcome = After(outcome, Newton());
         }
 
         if (outcome.Status == MatchStatus.NotConverged)
         {
-            var followed = Follow(outcome.Iterations, outcome.Evaluations);
-            if (followed.Status != MatchStatus.NotConverged)
-                outcome = followed;
-            else
-                outcome = followed with { Residual = double.IsFinite(outcome.Residual) ? outcome.Residual : 1.0 };
+            var followed = After(outcome, Follow());
+            outcome =
+                followed.Status == MatchStatus.NotConverged
+                    ? followed with
+                    {
+                        Residual = double.IsFinite(outcome.Residual) ? outcome.Residual : 1.0,
+                    }
+                    : followed;
         }
 
         StoreFreed();
-        return outcome.Status == MatchStatus.Solved ? Admissible(outcome) : outcome;
+        _solved = outcome.Solved;
+        return outcome.Solved ? Admissible(outcome) : outcome;
+    }
+
+    private static MatchOutcome After(MatchOutcome first, MatchOutcome then) =>
+        then with
+        {
+            Iterations = first.Iterations + then.Iterations,
+            Jacobians = first.Jacobians + then.Jacobians,
+            Passes = first.Passes + then.Passes,
+        };
+
+    /// <summary>
+    /// Fits the rows of the last Jacobian that belong to relative conditions to the values of a new problem; false where the
+    /// two problems do not have the same conditions.
+    /// </summary>
+    private bool Rescale(MatchingProblem next)
+    {
+        var last = _problem;
+        if (
+            last.Prescribed.Length != next.Prescribed.Length
+            || last.FirstOf.Length != next.FirstOf.Length
+            || !last.Freed.AsSpan().SequenceEqual(next.Freed)
+        )
+            return false;
+        for (var k = 0; k < next.Prescribed.Length; k++)
+        {
+            ref readonly var was = ref last.Prescribed[k];
+            ref readonly var becomes = ref next.Prescribed[k];
+            if (was.Quantity != becomes.Quantity)
+                return false;
+            if (was.Value != 0.0 && becomes.Value != 0.0)
+                _jacobian[Engine.UnknownCount - 1 + k] *= was.Value / becomes.Value;
+        }
+
+        return true;
     }
 
     private void Prepare(MatchingProblem problem, ReadOnlySpan<double> start)
@@ -107,6 +220,7 @@ public sealed class Matcher
         if (problem.ConditionCount != problem.Freed.Length + 1)
             throw new ArgumentException("the number of conditions must be that of the freed inputs plus one");
         start[..m].CopyTo(_x);
+        Array.Clear(_shift);
         var spools = Engine.Spools.Length;
         for (var i = 0; i < m; i++)
         {
@@ -128,7 +242,7 @@ public sealed class Matcher
 
         for (var k = 0; k < problem.Freed.Length; k++)
         {
-            var scale = FreedScale(problem.Freed[k]);
+            var scale = Engine.Layout.Scale(problem.Freed[k]);
             _x[m + k] = Inputs[problem.Freed[k]] / scale;
             _largestStep[m + k] = 0.15;
             _lower[m + k] = problem.Freed[k] is InputLayout.Temperature ? 0.5 : -2.0;
@@ -136,54 +250,49 @@ public sealed class Matcher
         }
     }
 
-    // A freed input is solved for in units in which it is of order one.
-    private double FreedScale(int input) =>
-        input switch
-        {
-            InputLayout.Temperature => 288.15,
-            InputLayout.Pressure => 101325.0,
-            InputLayout.SpecificHumidity => 0.05,
-            _ when input >= Engine.Layout.PowerOfftake(0) && input < Engine.Layout.PortFraction(0) => 1e6,
-            _ => 1.0,
-        };
-
     private void StoreFreed()
     {
         var m = Engine.UnknownCount;
         for (var k = 0; k < _problem.Freed.Length; k++)
-            Inputs[_problem.Freed[k]] = _x[m + k] * FreedScale(_problem.Freed[k]);
+            Inputs[_problem.Freed[k]] = _x[m + k] * Engine.Layout.Scale(_problem.Freed[k]);
     }
 
     private MatchOutcome Newton()
     {
-        LoadInputs();
-        var norm = EvaluateAt(_x);
-        var evaluations = 1;
+        _differentiated.Load(Inputs);
+        _plain.Load(Inputs);
+        var norm = EvaluateWithJacobian(_x);
+        var plain = false;
+        int passes = 0,
+            jacobians = 1;
+        var gain = 1.0;
         Span<double> step = stackalloc double[Dual.Width];
-        Span<Vector512<double>> rows = stackalloc Vector512<double>[Dual.Width];
         var iteration = 0;
         for (; iteration < MostIterations; iteration++)
         {
-            if (norm <= Tolerance)
-                return new MatchOutcome(MatchStatus.Solved, norm, iteration, evaluations, -1);
-            if (!double.IsFinite(norm))
+            if (norm <= Tolerance || !double.IsFinite(norm) || !NewtonStep(step, out var share))
                 break;
-            _residual.AsSpan(0, _n).CopyTo(step);
-            _jacobian.AsSpan(0, _n).CopyTo(rows);
-            if (!LinearSystem.Solve(rows, step, _n))
-                break;
-            var share = 1.0;
-            for (var i = 0; i < _n; i++)
-                if (Math.Abs(step[i]) * share > _largestStep[i])
-                    share = _largestStep[i] / Math.Abs(step[i]);
-
             var better = false;
             for (var halving = 0; halving < 8; halving++)
             {
                 for (var i = 0; i < _n; i++)
                     _trial[i] = Math.Clamp(_x[i] - share * step[i], _lower[i], _upper[i]);
-                var next = EvaluateAt(_trial);
-                evaluations++;
+                // Near the solution the Jacobian hardly changes: a pass without derivatives tells how far the step got, and
+                // whether the same Jacobian is good for the last one.
+                plain = norm < NearlySolved;
+                var next = plain ? EvaluatePlain(_trial) : EvaluateWithJacobian(_trial);
+                _ = plain ? passes++ : jacobians++;
+                if (plain && next > Tolerance)
+                {
+                    gain = next / norm;
+                    if (!(next * gain < 0.3 * Tolerance))
+                    {
+                        next = EvaluateWithJacobian(_trial);
+                        plain = false;
+                        jacobians++;
+                    }
+                }
+
                 // A little growth is let pass: residuals of choked passages rise before they fall.
                 if (next < norm * (halving == 0 ? 1.5 : 1.0 - 0.1 * share))
                 {
@@ -197,38 +306,60 @@ public sealed class Matcher
             }
 
             if (!better)
-            {
-                norm = EvaluateAt(_x);
                 break;
-            }
+        }
+
+        if (!plain || !(norm <= Tolerance))
+        {
+            // What is reported of this point is the plain pass.
+            norm = EvaluatePlain(_x);
+            passes++;
         }
 
         return norm <= Tolerance
-            ? new MatchOutcome(MatchStatus.Solved, norm, iteration, evaluations, -1)
-            : new MatchOutcome(MatchStatus.NotConverged, norm, iteration, evaluations, Worst());
+            ? new MatchOutcome(MatchStatus.Solved, norm, iteration, jacobians, passes, -1)
+            : new MatchOutcome(MatchStatus.NotConverged, norm, iteration, jacobians, passes, Worst());
+    }
+
+    /// <summary>
+    /// The full step from residuals and Jacobian at hand, and the share of it that no unknown is too large for; false where
+    /// the Jacobian is singular.
+    /// </summary>
+    private bool NewtonStep(Span<double> step, out double share)
+    {
+        Span<Vector512<double>> rows = stackalloc Vector512<double>[Dual.Width];
+        _residual.AsSpan(0, _n).CopyTo(step);
+        _jacobian.AsSpan(0, _n).CopyTo(rows);
+        share = 1.0;
+        if (!LinearSystem.Solve(rows, step, _n))
+            return false;
+        for (var i = 0; i < _n; i++)
+            if (Math.Abs(step[i]) * share > _largestStep[i])
+                share = _largestStep[i] / Math.Abs(step[i]);
+        return true;
     }
 
     /// <summary>
     /// Continuation from the design point: inputs move in a straight line to the wanted ones while the closing conditions
     /// are let in at the rate at which the line is walked.
     /// </summary>
-    private MatchOutcome Follow(int iterations, int evaluations)
+    private MatchOutcome Follow()
     {
         Array.Copy(Inputs, _wantedInputs, Inputs.Length);
         var m = Engine.UnknownCount;
         Engine.DesignUnknowns.CopyTo(_x, 0);
         Array.Copy(Engine.DesignInputs, Inputs, Inputs.Length);
         for (var k = 0; k < _problem.Freed.Length; k++)
-            _x[m + k] = Inputs[_problem.Freed[k]] / FreedScale(_problem.Freed[k]);
+            _x[m + k] = Inputs[_problem.Freed[k]] / Engine.Layout.Scale(_problem.Freed[k]);
         Array.Clear(_shift);
-        LoadInputs();
-        EvaluateAt(_x);
+        _plain.Load(Inputs);
+        EvaluatePlain(_x);
         for (var i = m - 1; i < _n; i++)
             _fullShift[i] = _residual[i];
 
         double done = 0.0,
             stride = 0.25;
-        var outcome = new MatchOutcome(MatchStatus.NotConverged, 1.0, iterations, evaluations, -1);
+        var outcome = new MatchOutcome(MatchStatus.NotConverged, 1.0, 0, 0, 0, -1);
         while (done < 1.0 && stride > 1e-4)
         {
             _x.AsSpan(0, _n).CopyTo(_pathStart);
@@ -238,9 +369,7 @@ public sealed class Matcher
             for (var i = 0; i < Inputs.Length; i++)
                 Inputs[i] = Engine.DesignInputs[i] + next * (_wantedInputs[i] - Engine.DesignInputs[i]);
             var local = Newton();
-            iterations += local.Iterations;
-            evaluations += local.Evaluations;
-            outcome = local with { Iterations = iterations, Evaluations = evaluations };
+            outcome = After(outcome, local);
             if (local.Solved)
             {
                 done = next;
@@ -261,95 +390,58 @@ public sealed class Matcher
     /// <summary>How far (0 to 1) the last continuation from the design point got.</summary>
     public double Progress { get; private set; } = 1.0;
 
-    private void LoadInputs()
-    {
-        for (var i = 0; i < Inputs.Length; i++)
-            _path.Inputs[i] = Dual.Constant(Inputs[i]);
-    }
-
     /// <summary>Residuals and Jacobian at a point; returns the largest relative imbalance.</summary>
-    [MethodImpl(MethodImplOptions.AggressiveOptimization)]
-    private double EvaluateAt(double[] x)
+    private double EvaluateWithJacobian(double[] x)
     {
-        var m = Engine.UnknownCount;
-        for (var i = 0; i < m; i++)
-            _path.Unknowns[i] = Dual.Variable(x[i], i);
-        for (var k = 0; k < _problem.Freed.Length; k++)
-        {
-            var scale = FreedScale(_problem.Freed[k]);
-            _path.Inputs[_problem.Freed[k]] = Dual.Variable(x[m + k], m + k) * scale;
-        }
-
-        _path.Evaluate();
+        _differentiated.Evaluate(_problem, x);
         var norm = 0.0;
-        for (var i = 0; i < m - 1; i++)
-            norm = Math.Max(norm, Store(i, _path.Residuals[i]));
-        var row = m - 1;
-        foreach (ref readonly var condition in _problem.Prescribed.AsSpan())
-            norm = Math.Max(norm, Store(row++, Relative(condition)));
-        if (_problem.FirstOf.Length > 0)
-            norm = Math.Max(norm, Store(row, MostExceeded()));
+        for (var i = 0; i < _n; i++)
+        {
+            ref readonly var row = ref _differentiated.Rows[i];
+            _residual[i] = row.Value - _shift[i];
+            _jacobian[i] = row.Partials;
+            norm = Math.Max(norm, Math.Abs(_residual[i]));
+        }
 
         return norm;
     }
 
+    /// <summary>Residuals alone; the Jacobian stays that of an earlier point.</summary>
+    private double EvaluatePlain(double[] x)
+    {
+        _plain.Evaluate(_problem, x);
+        return StorePlain();
+    }
+
+    private double StorePlain()
+    {
+        var norm = 0.0;
+        for (var i = 0; i < _n; i++)
+        {
+            _residual[i] = _plain.Rows[i].Value - _shift[i];
+            norm = Math.Max(norm, Math.Abs(_residual[i]));
+        }
+
+        return norm;
+    }
+
+    /// <summary>The equations of the last solution, differentiated by unknowns and freed inputs.</summary>
+    internal Equations<Dual> DifferentiateByUnknowns()
+    {
+        _differentiated.Load(Inputs);
+        _differentiated.Evaluate(_problem, _x);
+        return _differentiated;
+    }
+
+    /// <summary>The equations of the last solution, differentiated by eight inputs from <paramref name="first"/> on.</summary>
+    internal Equations<Dual> DifferentiateByInputs(int first)
+    {
+        _differentiated.EvaluateByInputs(_problem, _x, Inputs, first);
+        return _differentiated;
+    }
+
     /// <summary>The problem last solved.</summary>
     public MatchingProblem Problem => _problem;
-
-    /// <summary>
-    /// Residuals of the last solution with derivatives with respect to eight inputs from <paramref name="first"/> on, the
-    /// unknowns held; the pass then carries the same derivatives of every output.
-    /// </summary>
-    internal void DifferentiateByInputs(int first, Span<Dual> residuals)
-    {
-        LoadInputs();
-        for (var i = 0; i < Engine.UnknownCount; i++)
-            _path.Unknowns[i] = Dual.Constant(_x[i]);
-        for (var i = 0; i < Dual.Width && first + i < Inputs.Length; i++)
-            _path.Inputs[first + i] = Dual.Variable(Inputs[first + i], i);
-        _path.Evaluate();
-        _path.Residuals.CopyTo(residuals);
-        ClosingResiduals(residuals[(Engine.UnknownCount - 1)..]);
-    }
-
-    /// <summary>The same with respect to the unknowns and freed inputs.</summary>
-    internal void DifferentiateByUnknowns(Span<Dual> residuals)
-    {
-        LoadInputs();
-        EvaluateAt(_x);
-        _path.Residuals.CopyTo(residuals);
-        ClosingResiduals(residuals[(Engine.UnknownCount - 1)..]);
-    }
-
-    private void ClosingResiduals(Span<Dual> residuals)
-    {
-        var row = 0;
-        foreach (ref readonly var condition in _problem.Prescribed.AsSpan())
-            residuals[row++] = Relative(condition);
-        if (_problem.FirstOf.Length > 0)
-            residuals[row] = MostExceeded();
-    }
-
-    private Dual MostExceeded()
-    {
-        var worst = Relative(_problem.FirstOf[0]);
-        for (var k = 1; k < _problem.FirstOf.Length; k++)
-            worst = Dual.Max(worst, Relative(_problem.FirstOf[k]));
-        return worst;
-    }
-
-    private Dual Relative(in Limit condition)
-    {
-        var output = _path.Output(condition.Quantity);
-        return condition.Value == 0.0 ? output : output / condition.Value - 1.0;
-    }
-
-    private double Store(int row, in Dual residual)
-    {
-        _residual[row] = residual.Value - _shift[row];
-        _jacobian[row] = residual.Partials;
-        return Math.Abs(_residual[row]);
-    }
 
     private int Worst()
     {
@@ -367,7 +459,7 @@ public sealed class Matcher
         var largest = double.NegativeInfinity;
         for (var k = 0; k < _problem.FirstOf.Length; k++)
         {
-            var exceedance = Relative(_problem.FirstOf[k]).Value;
+            var exceedance = _plain.Relative(_problem.FirstOf[k]).Value;
             if (exceedance > largest)
                 (governing, largest) = (k, exceedance);
         }
@@ -383,13 +475,13 @@ public sealed class Matcher
         for (var k = 0; k < Engine.Compressors.Length; k++)
             if (Refusal(Engine.Compressors[k], k + 1, _x[beta++]) is var refusal and not MatchStatus.Solved)
                 return outcome with { Status = refusal, Culprit = k + 1 };
-        var ambient = _path.Inputs[InputLayout.Pressure].Value;
-        var last = Engine.Definition.Mixer is null ? _path.CoreExit.P.Value : _path.Mixed.P.Value;
-        if (!(last > ambient) || !(_path.CombustorInlet.W.Value > 0.0))
+        var ambient = _plain.Path.Inputs[InputLayout.Pressure].Value;
+        var last = Engine.Definition.Mixer is null ? _plain.Path.CoreExit.P.Value : _plain.Path.Mixed.P.Value;
+        if (!(last > ambient) || !(_plain.Path.CombustorInlet.W.Value > 0.0))
             return outcome with { Status = MatchStatus.NoThroughflow, Culprit = 0 };
-        if (Engine.HasFan && (!(_path.BypassExit.P.Value > ambient) || !(_path.FanTip.W.Value > 0.0)))
+        if (Engine.HasFan && (!(_plain.Path.BypassExit.P.Value > ambient) || !(_plain.Path.FanTip.W.Value > 0.0)))
             return outcome with { Status = MatchStatus.NoThroughflow, Culprit = 1 };
-        var far = _path.FuelFlow.Value / _path.CombustorInlet.W.Value;
+        var far = _plain.Path.FuelFlow.Value / _plain.Path.CombustorInlet.W.Value;
         return far > 0.0 && far < Engine.Definition.Gas.StoichiometricFuelAirRatio
             ? outcome
             : outcome with
@@ -400,7 +492,7 @@ public sealed class Matcher
 
     private MatchStatus Refusal(ScaledCompressor compressor, int index, double beta)
     {
-        var speed = _path.CorrectedSpeed[index].Value;
+        var speed = _plain.Path.CorrectedSpeed[index].Value;
         if (speed < compressor.Map.LowestSpeed || speed > compressor.Map.HighestSpeed)
             return MatchStatus.OutsideMapSpeed;
         return beta > 1.0 ? MatchStatus.BeyondSurge

@@ -45,17 +45,17 @@ public sealed class Influence
         var outputs = OutputsOf(engine);
         var names = engine.Layout.Names;
         var n = matcher.Solution.Length;
-        var residuals = new Dual[n];
-        matcher.DifferentiateByUnknowns(residuals);
-        var jacobian = residuals.Select(r => r.Partials).ToArray();
-        var byUnknowns = outputs.Select(o => o.Value(matcher.Path)).ToArray();
+        var equations = matcher.DifferentiateByUnknowns();
+        var jacobian = equations.Rows[..n].ToArray().Select(r => r.Partials).ToArray();
+        var byUnknowns = outputs.Select(o => o.Value(equations.Path)).ToArray();
 
         var derivatives = new double[outputs.Count, names.Count];
         var freed = matcher.Problem.Freed;
         for (var first = 0; first < names.Count; first += Dual.Width)
         {
-            matcher.DifferentiateByInputs(first, residuals);
-            var byInputs = outputs.Select(o => o.Value(matcher.Path)).ToArray();
+            equations = matcher.DifferentiateByInputs(first);
+            var residuals = equations.Rows[..n].ToArray();
+            var byInputs = outputs.Select(o => o.Value(equations.Path)).ToArray();
             for (var i = 0; i < Dual.Width && first + i < names.Count; i++)
             {
                 // A freed input is an answer, not a question: nothing moves it from outside.

@@ -135,7 +135,7 @@ internal static class PointAudit
         Components.Compressor.AtPort(
             gas,
             p.CompressorInlet[port.Compressor],
-            p.CompressorOutlet[port.Compressor],
+            p.CompressorDelivery[port.Compressor],
             port.Port.WorkFraction,
             out var state
         );

@@ -136,7 +136,7 @@ public sealed class PointReporter
         for (var k = 0; k < _engine.Compressors.Length; k++)
         {
             var inlet = _path.CompressorInlet[k];
-            var outlet = _path.CompressorOutlet[k];
+            var outlet = _path.CompressorDelivery[k];
             list.Add(
                 Compressor(gas, _engine.Compressors[k], k + 1, inlet, outlet, PointAudit.Power(_engine, _path, k))
             );
@@ -183,7 +183,7 @@ public sealed class PointReporter
         {
             var turbine = _engine.Turbines[k];
             var inlet = _path.TurbineInlet[k];
-            var work = inlet.H.Value - _path.TurbineRotorOutlet[k].H.Value;
+            var work = _path.TurbineWork[k].Value;
             var ratio = _path.ExpansionRatio[k].Value;
             list.Add(
                 new TurbineReport(
@@ -280,7 +280,7 @@ public sealed class PointReporter
             Components.Compressor.AtPort(
                 gas,
                 _path.CompressorInlet[port.Compressor],
-                _path.CompressorOutlet[port.Compressor],
+                _path.CompressorDelivery[port.Compressor],
                 port.Port.WorkFraction,
                 out var state
             );

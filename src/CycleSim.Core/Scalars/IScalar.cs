@@ -17,6 +17,9 @@ public interface IScalar<T>
 
     static abstract T Constant(double value);
 
+    /// <summary>A variable with derivative one in the place <paramref name="index"/>, where derivatives are carried.</summary>
+    static abstract T Variable(double value, int index);
+
     static abstract T operator +(in T a, in T b);
 
     static abstract T operator -(in T a, in T b);

@@ -9,6 +9,8 @@ public readonly struct Plain(double value) : IScalar<Plain>
 
     public static Plain Constant(double value) => new(value);
 
+    public static Plain Variable(double value, int index) => new(value);
+
     public static Plain operator +(in Plain a, in Plain b) => new(a.Value + b.Value);
 
     public static Plain operator -(in Plain a, in Plain b) => new(a.Value - b.Value);

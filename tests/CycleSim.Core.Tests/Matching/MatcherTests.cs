@@ -49,7 +49,11 @@ public class MatcherTests
         Assert.True(matcher.Solve(problem).Solved);
         var before = GC.GetAllocatedBytesForCurrentThread();
         for (var i = 0; i < 100; i++)
+        {
             matcher.Solve(problem);
+            matcher.SolveNext(problem);
+        }
+
         Assert.Equal(0, GC.GetAllocatedBytesForCurrentThread() - before);
     }
 
@@ -68,6 +72,24 @@ public class MatcherTests
         Thrust(1100.0);
         Thrust(1600.0);
         Assert.Equal(first, Thrust(1400.0));
+    }
+
+    [Fact]
+    public void Along_a_line_of_points_the_solutions_are_those_found_one_by_one()
+    {
+        var line = new Matcher(Twin);
+        var single = new Matcher(Twin);
+        foreach (var altitude in new[] { 0.0, 2500.0, 9000.0 })
+            for (var thrust = 24e3; thrust > 6e3; thrust *= 0.93)
+            {
+                var problem = MatchingProblem.For(Quantity.NetThrust, thrust);
+                foreach (var matcher in new[] { line, single })
+                    InputLayout.SetFlight(matcher.Inputs, FlightCondition.AtIsaOffset(altitude, 0.45, 0.0));
+                var next = line.SolveNext(problem);
+                Assert.True(next.Solved && next.Residual <= Matcher.Tolerance);
+                Assert.True(single.Solve(problem).Solved);
+                Assert.Equal(1.0, line.Path.FuelFlow.Value / single.Path.FuelFlow.Value, 1e-8);
+            }
     }
 
     [Fact]
