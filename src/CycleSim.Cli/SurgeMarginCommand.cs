@@ -108,7 +108,7 @@ internal static class SurgeMarginCommand
         if (s.WithoutSolution.Count > 5)
             Layout.Line($"... and {s.WithoutSolution.Count - 5} more; --json lists all.");
         Layout.Line(
-            "Allowances are textbook practice from memory; margins are as good as the compressor maps, steady state."
+            "Allowances are textbook practice from memory; margins are as good as the compressor maps, steady state; a change of\nflow (--worn) moves the surge line along with the speed lines."
         );
         Layout.Line($"Definition {loaded.Source}, SHA-256 {loaded.Hash[..16]}, cyclesim {Documents.Version}.");
         Layout.Line(Layout.Caution);
