@@ -34,8 +34,9 @@ internal sealed class DefinitionBuilder(List<TomlTableNode> nodes, string source
         Efficiency(fan, "");
         if (fan.Has("hub_isentropic_efficiency") && fan.Has("hub_polytropic_efficiency"))
             fan.Report("hub_polytropic_efficiency", "is given beside hub_isentropic_efficiency; give one of the two.");
-        foreach (var table in compressors.Concat(turbines))
+        foreach (var table in turbines)
             Efficiency(table, "");
+        var builtCompressors = compressors.Select(c => CompressorBuilder.Build(c, source, problems)).ToList();
         Names.Check(top, compressors, turbines, spools, air, ratings);
         Spools.Check(fan, compressors, turbines, spools);
         var ports = air.Select(a => AirPorts.Build(a, compressors, turbines, fan.Present)).ToList();
@@ -66,18 +67,7 @@ internal sealed class DefinitionBuilder(List<TomlTableNode> nodes, string source
                 RamEfficiency = inlet.Has("ram_efficiency") ? inlet.Number("ram_efficiency") : null,
             },
             Fan = fan.Present ? Fan(fan) : null,
-            Compressors =
-            [
-                .. compressors.Select(c => new CompressorDefinition
-                {
-                    Name = c.Text("name"),
-                    Spool = c.Text("spool"),
-                    PressureRatio = c.Number("pressure_ratio"),
-                    Efficiency = Efficiency(c, ""),
-                    InletDuctLoss = c.Number("inlet_duct_loss", 0.0),
-                    ReynoldsExponent = c.Number("reynolds_exponent", 0.0),
-                }),
-            ],
+            Compressors = [.. builtCompressors.Select(c => c!)],
             Combustor = new CombustorDefinition
             {
                 PressureLoss = combustor.Number("pressure_loss", 0.0),
@@ -168,7 +158,8 @@ internal sealed class DefinitionBuilder(List<TomlTableNode> nodes, string source
                 );
     }
 
-    private static DesignEfficiency Efficiency(TableReader table, string prefix)
+    /// <summary>Isentropic or polytropic efficiency of a table, whichever it gives; reports unless it gives one.</summary>
+    public static DesignEfficiency Efficiency(TableReader table, string prefix)
     {
         var isentropic = prefix + "isentropic_efficiency";
         var polytropic = prefix + "polytropic_efficiency";

@@ -358,11 +358,10 @@ internal static class Schema
                 new(
                     "pressure_ratio",
                     Dimension.Number,
-                    "At the design point.",
+                    "At the design point; follows from the stages where [[compressor.stage]] gives them, and so does the efficiency.",
                     1,
                     60,
                     LeastAllowed: false,
-                    Required: true,
                     Example: "12.0"
                 ),
                 new(
@@ -404,6 +403,104 @@ internal static class Schema
                 ),
             ],
             true
+        ),
+        new(
+            "compressor.stage",
+            true,
+            "A stage of the compressor above it, front to back. The stages are stacked into its map.",
+            [
+                new(
+                    "flow_coefficient",
+                    Dimension.Number,
+                    "Axial over blade speed at the mean line.",
+                    0.1,
+                    1.5,
+                    Required: true,
+                    Example: "0.51"
+                ),
+                new(
+                    "work_coefficient",
+                    Dimension.Number,
+                    "Work over blade speed squared.",
+                    0.02,
+                    1,
+                    Required: true,
+                    Example: "0.36"
+                ),
+                new(
+                    "blade_speed",
+                    Dimension.Speed,
+                    "Mean blade speed at design speed for air of 288.15 K.",
+                    50,
+                    700,
+                    Required: true,
+                    Example: "\"375 m/s\""
+                ),
+                new(
+                    "polytropic_efficiency",
+                    Dimension.Share,
+                    "At the design point. Give this or the pressure ratio.",
+                    0.3,
+                    1,
+                    Example: "0.915"
+                ),
+                new(
+                    "pressure_ratio",
+                    Dimension.Number,
+                    "Of the stage; its efficiency then follows from the work.",
+                    1,
+                    4,
+                    LeastAllowed: false,
+                    Example: "1.45"
+                ),
+                new(
+                    "peak_pressure",
+                    Dimension.Number,
+                    "Pressure coefficient at the top of the characteristic, over design.",
+                    1,
+                    2,
+                    LeastAllowed: false,
+                    Default: "1.12",
+                    Example: "1.12"
+                ),
+                new(
+                    "peak_flow",
+                    Dimension.Number,
+                    "Flow coefficient there, over design.",
+                    0.3,
+                    0.99,
+                    Default: "0.8",
+                    Example: "0.8"
+                ),
+                new(
+                    "shape",
+                    Dimension.Number,
+                    "Distance of the parabola's vertex from the top, over that of the design point from it.",
+                    -0.9,
+                    0.9,
+                    Default: "0",
+                    Example: "0.2"
+                ),
+                new(
+                    "stator_reset",
+                    Dimension.Number,
+                    "Variable stator: relative reduction of the design flow coefficient per unit of corrected speed below 1; 0 for a fixed one.",
+                    0,
+                    3,
+                    Default: "0",
+                    Example: "1.2"
+                ),
+                new(
+                    "bleed",
+                    Dimension.Share,
+                    "Share of the compressor's inlet flow that leaves behind this stage when the map is made.",
+                    0,
+                    1,
+                    MostAllowed: false,
+                    Default: "0",
+                    Example: "\"1.3 %\""
+                ),
+            ]
         ),
         new(
             "combustor",

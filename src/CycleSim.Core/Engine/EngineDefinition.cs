@@ -1,5 +1,6 @@
 using CycleSim.Air;
 using CycleSim.Gas;
+using CycleSim.Maps;
 
 namespace CycleSim.Engine;
 
@@ -115,6 +116,9 @@ public sealed record CompressorDefinition
     public required double PressureRatio { get; init; }
 
     public required DesignEfficiency Efficiency { get; init; }
+
+    /// <summary>Its map where its stages are known; the general shape without it.</summary>
+    public StackedMap? Map { get; init; }
 
     /// <summary>Total-pressure loss of the duct ahead, at the design point.</summary>
     public double InletDuctLoss { get; init; }

@@ -23,7 +23,7 @@ public sealed class SizedEngine
             : null;
         Compressors =
         [
-            .. definition.Compressors.Select(c => new ScaledCompressor(c.Name, Spool(c.Spool), c.PressureRatio)
+            .. definition.Compressors.Select(c => new ScaledCompressor(c.Name, Spool(c.Spool), c.PressureRatio, c.Map)
             {
                 ReynoldsExponent = c.ReynoldsExponent,
             }),
@@ -95,17 +95,17 @@ public sealed class SizedEngine
 }
 
 /// <summary>A compressor map with the factors that put the design point on it.</summary>
-public sealed class ScaledCompressor(string name, int spool, double designPressureRatio)
+public sealed class ScaledCompressor(string name, int spool, double designPressureRatio, StackedMap? stacked = null)
 {
     public string Name { get; } = name;
 
     public int Spool { get; } = spool;
 
     /// <summary>The unscaled map.</summary>
-    public CompressorMap Map { get; internal set; } = CompressorShape.Build(designPressureRatio);
+    public CompressorMap Map { get; } = stacked?.Map ?? CompressorShape.Build(designPressureRatio);
 
     /// <summary>Position of the design point on its speed line.</summary>
-    public double DesignBeta { get; internal set; } = CompressorShape.DesignBeta;
+    public double DesignBeta { get; } = stacked?.DesignBeta ?? CompressorShape.DesignBeta;
 
     /// <summary>Corrected flow (W sqrt(RT)/P, m2), pressure rise and efficiency over the map's; sqrt(RT) of design.</summary>
     public double FlowScale { get; internal set; } = 1.0;

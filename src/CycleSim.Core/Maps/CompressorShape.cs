@@ -40,12 +40,9 @@ public static class CompressorShape
 
     private static (double Flow, double PressureRatio, double Efficiency) At(double design, double speed, double beta)
     {
-        const double Exponent = PolytropicEfficiency * Gamma / (Gamma - 1.0);
         var rise = Math.Pow(design, 1.0 / Exponent) - 1.0;
-        var tau = 1.0 + rise * speed * speed;
-        var backbone = Math.Pow(tau, Exponent);
-        var density = backbone / tau / (design / (1.0 + rise));
-        var backboneFlow = speed * Math.Pow(density, 0.75);
+        var (backboneFlow, backbone) = Backbone(rise, speed);
+        backboneFlow /= Backbone(rise, 1.0).Flow;
 
         // s: 1 on the surge line, 0 at best efficiency, -1.5 where the line has fallen to almost no pressure rise.
         var s = (beta - DesignBeta) / (1.0 - DesignBeta);
@@ -61,5 +58,34 @@ public static class CompressorShape
         var across = 1.0 - (s < 0.0 ? 0.12 : 0.07) * s * s;
         var atDesign = 1.0 - 0.9 * 0.08 * 0.08;
         return (flow, pressureRatio, along / atDesign * across);
+    }
+
+    /// <summary>
+    /// Carries a point of a speed line down to a lower speed along the backbone's law: temperature rise with the square of
+    /// speed, flow with speed times mean density.
+    /// </summary>
+    public static (double Flow, double PressureRatio, double Efficiency) CarryDown(
+        double flow,
+        double pressureRatio,
+        double efficiency,
+        double fromSpeed,
+        double toSpeed
+    )
+    {
+        var rise = (Math.Pow(pressureRatio, 1.0 / Exponent) - 1.0) / (fromSpeed * fromSpeed);
+        var from = Backbone(rise, fromSpeed);
+        var to = Backbone(rise, toSpeed);
+        double Along(double speed) => 1.0 - 0.22 * Math.Pow(Math.Min(0.0, speed - 0.92), 2.0);
+        return (flow * to.Flow / from.Flow, to.PressureRatio, efficiency * Along(toSpeed) / Along(fromSpeed));
+    }
+
+    private const double Exponent = PolytropicEfficiency * Gamma / (Gamma - 1.0);
+
+    /// <summary>Flow (any unit) and pressure ratio at a speed, for a temperature rise over inlet temperature at speed 1.</summary>
+    private static (double Flow, double PressureRatio) Backbone(double rise, double speed)
+    {
+        var tau = 1.0 + rise * speed * speed;
+        var ratio = Math.Pow(tau, Exponent);
+        return (speed * Math.Pow(ratio / tau, 0.75), ratio);
     }
 }

@@ -1,0 +1,287 @@
+using CycleSim.Gas;
+
+namespace CycleSim.Maps;
+
+/// <summary>A stage at its design point, and how its characteristic bends away from it.</summary>
+public sealed record StageDefinition
+{
+    /// <summary>Axial over blade speed at the mean line, and work over blade speed squared, at the design point.</summary>
+    public required double FlowCoefficient { get; init; }
+
+    public required double WorkCoefficient { get; init; }
+
+    /// <summary>Mean blade speed at design speed for inlet air at 288.15 K, m/s.</summary>
+    public required double BladeSpeed { get; init; }
+
+    /// <summary>At the design point. Zero where <see cref="PressureRatio"/> is given instead.</summary>
+    public double PolytropicEfficiency { get; init; }
+
+    /// <summary>Stage pressure ratio at the design point, where it is known; the efficiency then follows from the work.</summary>
+    public double PressureRatio { get; init; }
+
+    /// <summary>Pressure coefficient at the top of the characteristic and the flow coefficient there, over design.</summary>
+    public double PeakPressure { get; init; } = 1.12;
+
+    public double PeakFlow { get; init; } = 0.80;
+
+    /// <summary>
+    /// How far the parabola's vertex lies from the peak: 0 puts it there, positive values make the characteristic fall more
+    /// steeply beyond the design point.
+    /// </summary>
+    public double Shape { get; init; }
+
+    /// <summary>
+    /// Variable stator: relative reduction of the design flow coefficient per unit of relative corrected speed below 1; 0
+    /// for a fixed one.
+    /// </summary>
+    public double StatorReset { get; init; }
+
+    /// <summary>Share of the compressor's inlet flow bled behind this stage.</summary>
+    public double Bleed { get; init; }
+}
+
+/// <summary>A point of a stacked compressor.</summary>
+/// <param name="PressureRatio">product of the stages'</param>
+/// <param name="Efficiency">isentropic, of the whole</param>
+/// <param name="LeastMargin">
+/// smallest flow coefficient over that of the characteristic's top, over all stages; below 1 that stage is stalled
+/// </param>
+/// <param name="Critical">the stage that has it, 0 for the first</param>
+/// <param name="ExitCorrectedFlow">W sqrt(T)/P at the exit over its value at the design point</param>
+public readonly record struct StackPoint(
+    double PressureRatio,
+    double Efficiency,
+    double LeastMargin,
+    int Critical,
+    double ExitCorrectedFlow
+);
+
+/// <summary>
+/// Stage stacking: the stages' generalised characteristics in series, continuity from each to the next through annulus
+/// areas that the design point fixes. The overall pressure ratio is the product of the stages'.
+/// </summary>
+/// <remarks>
+/// Characteristics in the form used by Muir, Saravanamuttoo and Marshall (ASME J. Eng. Gas Turbines Power 111, 1989, from
+/// memory): pressure coefficient psi* = peak - (peak - 1) ((x - phi*) / (x - 1))^2 with x the vertex, efficiency over
+/// r = psi*/phi* with exponent 3.5 on the lightly loaded side and 2 on the heavily loaded one. A variable stator shifts its
+/// stage's characteristic along the flow coefficient (own simplification). Air is thermally perfect and enters at 288.15 K and
+/// one atmosphere; results are in corrected terms.
+/// </remarks>
+public sealed class StageStack
+{
+    private const double InletTemperature = 288.15,
+        InletPressure = 101325.0;
+
+    // Ends of the efficiency curve, from memory of the published form: what is left where a stage runs almost unloaded and
+    // where it stalls.
+    private const double LightLoad = 0.35,
+        LightEfficiency = 0.55,
+        StallEfficiency = 0.88;
+
+    private static readonly ThermallyPerfectGas Air = ThermallyPerfectGas.For(Fuel.JetA1);
+
+    private readonly StageDefinition[] _stages;
+    private readonly double[] _area;
+    private readonly double[] _pressureCoefficient;
+    private readonly double _exitFlow;
+    private readonly GasPoint _inlet;
+
+    /// <exception cref="ArgumentException">No stages, or a stage that cannot be.</exception>
+    public StageStack(IReadOnlyList<StageDefinition> stages)
+    {
+        if (stages.Count == 0)
+            throw new ArgumentException("A stack needs at least one stage.", nameof(stages));
+        for (var i = 0; i < stages.Count; i++)
+            Check(stages[i], i);
+        if (stages.Sum(s => s.Bleed) >= 1.0)
+            throw new ArgumentException("The stages bleed more than comes in.", nameof(stages));
+        _stages = [.. stages];
+        _area = new double[_stages.Length];
+        _pressureCoefficient = new double[_stages.Length];
+        Air.AtTemperature(InletTemperature, 0.0, 0.0, out _inlet);
+
+        double w = 1.0,
+            p = InletPressure;
+        var state = _inlet;
+        for (var i = 0; i < _stages.Length; i++)
+        {
+            var stage = _stages[i];
+            var u = stage.BladeSpeed;
+            var axial = stage.FlowCoefficient * u;
+            _area[i] = w / (Density(state, p, axial) * axial);
+            Air.AtEnthalpy(state.H + stage.WorkCoefficient * u * u, 0.0, 0.0, out var outlet);
+            var rise =
+                stage.PressureRatio > 0.0
+                    ? Air.RAir * Math.Log(stage.PressureRatio)
+                    : stage.PolytropicEfficiency * (outlet.Phi - state.Phi);
+            if (!(rise < outlet.Phi - state.Phi))
+                throw new ArgumentException(
+                    $"Stage {i + 1}: a pressure ratio of {stage.PressureRatio:F3} needs more work than its work coefficient "
+                        + $"{stage.WorkCoefficient:F3} at {u:F0} m/s gives, even without losses."
+                );
+            Air.AtEntropy(state.Phi + rise, 0.0, 0.0, out var ideal);
+            _pressureCoefficient[i] = (ideal.H - state.H) / (u * u);
+            p *= Math.Exp(rise / Air.RAir);
+            state = outlet;
+            w -= stage.Bleed;
+        }
+
+        _exitFlow = w * Math.Sqrt(state.T) / p;
+        Design =
+            At(1.0, 1.0)
+            ?? throw new ArgumentException("The stages do not pass their own design flow.", nameof(stages));
+    }
+
+    /// <summary>The design point: product of the stages' pressure ratios, efficiency of the whole.</summary>
+    public StackPoint Design { get; }
+
+    public int StageCount => _stages.Length;
+
+    /// <summary>
+    /// The stack at a relative corrected speed and inlet corrected flow (1 at design); null where a stage chokes or no longer
+    /// compresses.
+    /// </summary>
+    public StackPoint? At(double speed, double flow)
+    {
+        double w = flow,
+            p = InletPressure,
+            least = double.PositiveInfinity;
+        var critical = 0;
+        var state = _inlet;
+        for (var i = 0; i < _stages.Length; i++)
+        {
+            var stage = _stages[i];
+            var u = stage.BladeSpeed * speed;
+            if (AxialSpeed(state, p, w / _area[i]) is not { } axial)
+                return null;
+            var reset = Math.Max(0.2, 1.0 - stage.StatorReset * (1.0 - speed));
+            var phi = axial / u / (stage.FlowCoefficient * reset);
+            var margin = phi / stage.PeakFlow;
+            if (margin < least)
+                (least, critical) = (margin, i);
+            var psi = Pressure(stage, phi);
+            if (psi < 0.02)
+                return null;
+            var efficiency = Efficiency(stage, psi / phi);
+            var ideal = psi * _pressureCoefficient[i] * u * u;
+            Air.AtEnthalpy(state.H + ideal, 0.0, 0.0, out var compressed);
+            p *= Math.Exp((compressed.Phi - state.Phi) / Air.RAir);
+            // Isentropic efficiency at design from the polytropic one: ideal over real work there.
+            var designEfficiency = _pressureCoefficient[i] / stage.WorkCoefficient;
+            Air.AtEnthalpy(state.H + ideal / (efficiency * designEfficiency), 0.0, 0.0, out state);
+            w -= stage.Bleed * flow;
+        }
+
+        var ratio = p / InletPressure;
+        Air.AtEntropy(_inlet.Phi + Air.RAir * Math.Log(ratio), 0.0, 0.0, out var whole);
+        return new StackPoint(
+            ratio,
+            (whole.H - _inlet.H) / (state.H - _inlet.H),
+            least,
+            critical,
+            w * Math.Sqrt(state.T) / p / _exitFlow
+        );
+    }
+
+    /// <summary>
+    /// The speed line at a relative corrected speed from surge to choke: surge is where the pressure ratio stops rising with
+    /// falling flow or the first stages are past their tops by the tolerated share; empty where the stages do not go together.
+    /// </summary>
+    public IReadOnlyList<(double Flow, StackPoint Point)> SpeedLine(double speed, int points = 60)
+    {
+        const double ToleratedStall = 0.88;
+        var highest = 0.0;
+        for (var flow = 1.6; flow > 0.02; flow -= 0.004)
+            if (At(speed, flow) is { PressureRatio: > 1.0 })
+            {
+                highest = flow;
+                break;
+            }
+
+        double low = highest,
+            high = highest + 0.004;
+        for (var i = 0; i < 40; i++)
+        {
+            var middle = 0.5 * (low + high);
+            if (At(speed, middle) is { PressureRatio: > 1.0 })
+                low = middle;
+            else
+                high = middle;
+        }
+
+        var line = new List<(double, StackPoint)>();
+        var peak = 0.0;
+        for (var flow = low; flow > 0.2 * low; flow -= low / (8.0 * points))
+        {
+            if (At(speed, flow) is not { } point || point.LeastMargin < ToleratedStall || point.PressureRatio < peak)
+                break;
+            peak = point.PressureRatio;
+            line.Add((flow, point));
+        }
+
+        line.Reverse();
+        return line;
+    }
+
+    private static double Pressure(StageDefinition stage, double phi)
+    {
+        var vertex = stage.PeakFlow + stage.Shape * (stage.PeakFlow - 1.0);
+        var u = (vertex - phi) / (vertex - 1.0);
+        return stage.PeakPressure - (stage.PeakPressure - 1.0) * u * u;
+    }
+
+    private static double Efficiency(StageDefinition stage, double load)
+    {
+        if (load <= 1.0)
+            return Math.Max(0.2, 1.0 - (1.0 - LightEfficiency) * Math.Pow((1.0 - load) / (1.0 - LightLoad), 3.5));
+        var stall = stage.PeakPressure / stage.PeakFlow;
+        var over = (load - 1.0) / (stall - 1.0);
+        return Math.Max(0.2, 1.0 - (1.0 - StallEfficiency) * over * over);
+    }
+
+    private static double Density(in GasPoint total, double pressure, double axial)
+    {
+        Air.AtEnthalpy(total.H - 0.5 * axial * axial, 0.0, 0.0, out var s);
+        return pressure * Math.Exp((s.Phi - total.Phi) / Air.RAir) / (Air.RAir * s.T);
+    }
+
+    /// <summary>Subsonic axial speed at a flow per area, kg/(s m2); null beyond what the annulus passes.</summary>
+    private static double? AxialSpeed(in GasPoint total, double pressure, double flux)
+    {
+        double low = 0.0,
+            high = Math.Sqrt(2.0 * 1.4 / 2.4 * Air.RAir * total.T);
+        if (!(Density(total, pressure, high) * high > flux))
+            return null;
+        for (var i = 0; i < 50; i++)
+        {
+            var middle = 0.5 * (low + high);
+            if (Density(total, pressure, middle) * middle < flux)
+                low = middle;
+            else
+                high = middle;
+        }
+
+        return low;
+    }
+
+    private static void Check(StageDefinition stage, int index)
+    {
+        void Refuse(string what) => throw new ArgumentException($"Stage {index + 1}: {what}.", nameof(stage));
+        if (stage.FlowCoefficient is not (> 0.1 and < 1.5))
+            Refuse("the flow coefficient must lie between 0.1 and 1.5");
+        if (stage.WorkCoefficient is not (> 0.02 and < 1.0))
+            Refuse("the work coefficient must lie between 0.02 and 1");
+        if (stage.BladeSpeed is not (> 50.0 and < 700.0))
+            Refuse("the blade speed must lie between 50 and 700 m/s");
+        if (stage.PressureRatio > 0.0 == stage.PolytropicEfficiency > 0.0)
+            Refuse("give either a pressure ratio or an efficiency");
+        if (stage.PressureRatio > 0.0 && stage.PressureRatio is not (> 1.0 and < 4.0))
+            Refuse("the pressure ratio must lie between 1 and 4");
+        if (stage.PolytropicEfficiency > 0.0 && stage.PolytropicEfficiency is not (> 0.3 and <= 1.0))
+            Refuse("the efficiency must lie between 0.3 and 1");
+        if (stage.PeakFlow is not (> 0.3 and < 0.99) || stage.PeakPressure is not (> 1.0 and < 2.0))
+            Refuse("the top of the characteristic must lie at a flow of 0.3 to 0.99 and a pressure of 1 to 2");
+        if (stage.Bleed is not (>= 0.0 and < 1.0))
+            Refuse("the bleed must lie between 0 and 1");
+    }
+}
