@@ -18,7 +18,14 @@ internal static class CompressorBuilder
                 "pressure_ratio",
                 "is missing. Expected a number without unit, for instance pressure_ratio = 12.0, or [[compressor.stage]] tables."
             );
-        return Of(table, table.Number("pressure_ratio"), DefinitionBuilder.Efficiency(table, ""), null);
+        PlacedMap? map = null;
+        if (table.Has("map"))
+        {
+            var folder = Path.GetDirectoryName(Path.GetFullPath(source)) ?? "";
+            map = MapFile.Read(Path.Combine(folder, table.Text("map")), problems);
+        }
+
+        return Of(table, table.Number("pressure_ratio"), DefinitionBuilder.Efficiency(table, ""), map);
     }
 
     private static CompressorDefinition? Stacked(
@@ -28,7 +35,7 @@ internal static class CompressorBuilder
         List<Problem> problems
     )
     {
-        foreach (var key in new[] { "pressure_ratio", "isentropic_efficiency", "polytropic_efficiency" })
+        foreach (var key in new[] { "pressure_ratio", "isentropic_efficiency", "polytropic_efficiency", "map" })
             if (table.Has(key))
                 table.Report(
                     key,
@@ -79,7 +86,7 @@ internal static class CompressorBuilder
         TableReader table,
         double pressureRatio,
         DesignEfficiency efficiency,
-        StackedMap? map
+        PlacedMap? map
     ) =>
         new()
         {

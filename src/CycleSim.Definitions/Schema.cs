@@ -365,6 +365,12 @@ internal static class Schema
                     Example: "12.0"
                 ),
                 new(
+                    "map",
+                    Dimension.Text,
+                    "Table of its map, a file of comma-separated values beside the definition: speed,beta,flow,pressure_ratio,efficiency; scaled to the design point, which goes where the efficiency at design speed is highest. The general shape without it.",
+                    Example: "\"hpc-map.csv\""
+                ),
+                new(
                     "isentropic_efficiency",
                     Dimension.Share,
                     "At the design point. Give this or the polytropic one.",

@@ -117,8 +117,8 @@ public sealed record CompressorDefinition
 
     public required DesignEfficiency Efficiency { get; init; }
 
-    /// <summary>Its map where its stages are known; the general shape without it.</summary>
-    public StackedMap? Map { get; init; }
+    /// <summary>Its map where its stages or a table are known; the general shape without it.</summary>
+    public PlacedMap? Map { get; init; }
 
     /// <summary>Total-pressure loss of the duct ahead, at the design point.</summary>
     public double InletDuctLoss { get; init; }

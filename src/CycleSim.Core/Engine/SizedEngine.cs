@@ -95,7 +95,7 @@ public sealed class SizedEngine
 }
 
 /// <summary>A compressor map with the factors that put the design point on it.</summary>
-public sealed class ScaledCompressor(string name, int spool, double designPressureRatio, StackedMap? stacked = null)
+public sealed class ScaledCompressor(string name, int spool, double designPressureRatio, PlacedMap? stacked = null)
 {
     public string Name { get; } = name;
 

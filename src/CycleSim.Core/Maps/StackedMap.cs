@@ -1,22 +1,19 @@
 namespace CycleSim.Maps;
 
-/// <summary>A compressor map made by stacking stages, with the position of the design point on it.</summary>
-/// <param name="Map">the map, flow relative to design</param>
-/// <param name="DesignBeta">position of the design point on the line of speed 1</param>
-/// <param name="LowestStackedSpeed">
-/// lowest relative corrected speed at which the stages go together; lines below it go on by the law of
-/// <see cref="CompressorShape"/>
-/// </param>
-public sealed record StackedMap(CompressorMap Map, double DesignBeta, double LowestStackedSpeed)
+/// <summary>Makes a compressor's map by stacking its stages.</summary>
+public static class StackedMap
 {
     private const int Positions = 17;
     private const double LowestSpeed = 0.20,
         HighestSpeed = 1.10,
         Step = 0.025;
 
-    /// <summary>Stacks the stages at every speed of the grid.</summary>
+    /// <summary>
+    /// Stacks the stages at every speed of the grid; below the lowest at which they go together the lines go on by the law of
+    /// <see cref="CompressorShape"/>.
+    /// </summary>
     /// <exception cref="ArgumentException">The stages do not go together at design speed, or the design point is past surge.</exception>
-    public static StackedMap Build(StageStack stack)
+    public static PlacedMap Build(StageStack stack)
     {
         var speeds = new List<double>();
         for (var n = LowestSpeed; n < HighestSpeed + 1e-9; n += Step)
@@ -49,7 +46,7 @@ public sealed record StackedMap(CompressorMap Map, double DesignBeta, double Low
         for (var j = 0; j < Positions; j++)
             (flow[i, j], ratio[i, j], efficiency[i, j]) = (lines[i][j, 0], lines[i][j, 1], lines[i][j, 2]);
         var map = new CompressorMap([.. speeds], betas, flow, ratio, efficiency);
-        return new StackedMap(map, DesignPosition(map, stack.Design.PressureRatio), speeds[lowest]);
+        return new PlacedMap(map, DesignPosition(map, stack.Design.PressureRatio), speeds[lowest]);
     }
 
     /// <summary>

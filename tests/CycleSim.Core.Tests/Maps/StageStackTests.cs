@@ -107,7 +107,7 @@ public class StageStackTests
         Assert.Equal(1.0, design.Value[0], 0.01);
         Assert.Equal(Ten.Design.Efficiency, design.Value[2], 0.005);
         Assert.InRange(stacked.DesignBeta, 0.3, 0.95);
-        Assert.InRange(stacked.LowestStackedSpeed, 0.5, 0.86);
+        Assert.InRange(stacked.LowestFoundedSpeed, 0.5, 0.86);
         foreach (var speed in stacked.Map.Speeds)
             for (var beta = 0.05; beta <= 1.0; beta += 0.05)
             {
