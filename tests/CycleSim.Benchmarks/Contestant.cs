@@ -32,6 +32,8 @@ internal abstract class Contestant(string method, Sweep sweep, bool warm)
 
     public bool Warm { get; } = warm;
 
+    public Sweep Sweep => sweep;
+
     protected SizedEngine Engine => sweep.Engine;
 
     public Tally RunSweep()

@@ -30,9 +30,17 @@ else
     Console.WriteLine("MINPACK hybrd1 is left out: install libcminpack1 to compare with it.");
 
 List<Measurement> measurements = [.. contestants.Select(c => new Measurement(c))];
+
+// The other arrangements by our own solver alone: what a point of them costs beside the twin-spool's.
+List<Measurement> others =
+[
+    .. new[] { "torvik-75", "lunde-14g", "pelda-4m" }.Select(name => new Measurement(
+        new MatcherContestant(new Sweep(Sizing.Size(EngineLibrary.Load(name).Engine)), true)
+    )),
+];
 var elements = new Elements(sweep);
 List<(double Property, double Plain, double Dual)> times = [];
-foreach (var measurement in measurements)
+foreach (var measurement in measurements.Concat(others))
     measurement.WarmUp();
 for (var i = 0; i < 30; i++)
     Time();
@@ -43,10 +51,12 @@ for (var round = 0; round < rounds; round++)
 {
     for (var k = 0; k < measurements.Count; k++)
         measurements[(round + k) % measurements.Count].RunRound();
+    foreach (var other in others)
+        other.RunRound();
     Time();
 }
 
-Report.Print(sweep, measurements, times);
+Report.Print(sweep, measurements, others, times);
 foreach (var contestant in contestants)
     (contestant as IDisposable)?.Dispose();
 return 0;
