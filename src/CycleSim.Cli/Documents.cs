@@ -31,6 +31,23 @@ internal static class Documents
         return document;
     }
 
+    public static JsonObject Point(OperatingPoint p, LoadedDefinition loaded, IReadOnlyList<LimitMargin> margins)
+    {
+        var document = Point(p, loaded);
+        document["limit_margins"] = Array(
+            margins,
+            m =>
+            {
+                var entry = LimitOf(m.Limit);
+                entry["rating"] = m.Rating;
+                entry["at_point"] = Number(m.Value);
+                entry["left"] = Number(m.Left);
+                return entry;
+            }
+        );
+        return document;
+    }
+
     public static JsonObject Of(FlatRatingResult s, LoadedDefinition loaded)
     {
         var document = Provenance(loaded);

@@ -30,11 +30,13 @@ internal static class PointCommand
         {
             setting.RequireOne(result, common);
             var loaded = EngineLibrary.Load(result.GetRequiredValue(common.Engine));
-            var point = setting.Solve(result, common, new EngineModel(loaded.Engine));
+            var model = new EngineModel(loaded.Engine);
+            var point = setting.Solve(result, common, model);
+            var margins = setting.LimitsOf(result, model) is { } limits ? LimitMargin.Of(point, limits) : [];
             if (result.GetValue(common.Json))
-                Documents.Print(Documents.Point(point, loaded));
+                Documents.Print(Documents.Point(point, loaded, margins));
             else
-                PointLayout.Print(point, loaded, common.Display(result));
+                PointLayout.Print(point, loaded, margins, common.Display(result));
             return ExitCode.Done;
         });
         return command;

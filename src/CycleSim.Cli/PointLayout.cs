@@ -7,7 +7,7 @@ namespace CycleSim.Cli;
 /// <summary>An operating point on the terminal.</summary>
 internal static class PointLayout
 {
-    public static void Print(OperatingPoint p, LoadedDefinition loaded, Display d)
+    public static void Print(OperatingPoint p, LoadedDefinition loaded, IReadOnlyList<LimitMargin> margins, Display d)
     {
         var flight = p.Flight;
         Layout.Line(
@@ -43,6 +43,10 @@ internal static class PointLayout
                 $"thermal {Display.Percent(p.ThermalEfficiency, 1)}, propulsive {Display.Percent(p.PropulsiveEfficiency, 1)}, overall {Display.Percent(p.OverallEfficiency, 1)} %"
             )
         );
+        foreach (var margin in margins)
+            Layout.Line(
+                $"  {(margin.Left < -1e-9 * margin.Limit.Value ? "BEYOND " : "")}limit {Setting(margin.Limit, d)} of {margin.Rating}: {Left(margin, d)}"
+            );
         Layout.Line();
         Layout.Table(
             "Stations",
@@ -163,6 +167,20 @@ internal static class PointLayout
         );
         Layout.Line($"Definition {loaded.Source}, SHA-256 {loaded.Hash[..16]}, cyclesim {Documents.Version}.");
         Layout.Line(Layout.Caution);
+    }
+
+    private static string Left(LimitMargin margin, Display d)
+    {
+        var by = Math.Abs(margin.Left);
+        var amount = margin.Limit.Quantity switch
+        {
+            Quantity.T3 or Quantity.T4 or Quantity.T41 or Quantity.T45 or Quantity.T5 =>
+                $"{Display.Fixed(d.DifferenceUnit == "K" ? by : by * 1.8, 1)} {d.DifferenceUnit}",
+            Quantity.P3 => $"{d.Pressure(by)} {d.PressureUnit}",
+            Quantity.Epr => Display.Fixed(by, 4),
+            _ => $"{Display.Percent(by)} points",
+        };
+        return margin.Left < -1e-9 * margin.Limit.Value ? $"exceeded by {amount}" : $"{amount} left";
     }
 
     private static string DissociationNote(OperatingPoint p, Display d) =>

@@ -86,6 +86,28 @@ internal sealed class PowerSetting
         return model.At(flight, choice.Quantity, value, inputs);
     }
 
+    /// <summary>
+    /// The rating whose limits a point is held against: the one asked for, else the first of the definition that can be worked
+    /// out; null without any.
+    /// </summary>
+    public Matching.Rating? LimitsOf(ParseResult result, EngineModel model)
+    {
+        if (Rating(result) is { } name)
+            return model.Rating(name);
+        foreach (var rating in model.Engine.Definition.Ratings)
+            try
+            {
+                return model.Rating(rating.Name);
+            }
+            catch (Matching.RatingException)
+            {
+                // A point stands without its ratings; 'flat-rating' says what is wrong with this one.
+                continue;
+            }
+
+        return null;
+    }
+
     private string? Rating(ParseResult result) => _hasRating ? result.GetValue(_rating) : null;
 
     private static Choice Of(string name, string description, Quantity quantity, Dimension dimension) =>

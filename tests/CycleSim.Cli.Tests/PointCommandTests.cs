@@ -149,6 +149,35 @@ public class PointCommandTests
     }
 
     [Fact]
+    public void What_is_left_before_each_limit_is_shown()
+    {
+        var rated = CommandLine.Run(
+            "point",
+            "velda-27",
+            "--altitude",
+            "0 m",
+            "--isa",
+            "15 K",
+            "--rating",
+            "take-off",
+            "--json"
+        );
+        var t41 = rated
+            .Json.GetProperty("limit_margins")
+            .EnumerateArray()
+            .Single(m => m.GetProperty("quantity").GetString() == "T41");
+        Assert.Equal(0.0, t41.GetProperty("left").GetDouble(), 1e-4);
+        var beyond = CommandLine.Run("point", "velda-27", "--altitude", "0 m", "--T41", "1700 K");
+        Assert.Equal(0, beyond.ExitCode);
+        Assert.Contains("BEYOND limit T41", beyond.Output);
+        Assert.Contains("exceeded by", beyond.Output);
+        Assert.Contains(
+            "points left",
+            CommandLine.Run("point", "velda-27", "--altitude", "0 m", "--T41", "1400 K").Output
+        );
+    }
+
+    [Fact]
     public void Thrust_beyond_the_engine_gives_the_reason_and_no_number()
     {
         var run = CommandLine.Run("point", "velda-27", "--altitude", "0 m", "--thrust", "400 kN");

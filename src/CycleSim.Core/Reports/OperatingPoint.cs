@@ -84,6 +84,26 @@ public sealed record OperatingPoint
 
     internal Lazy<double> Dissociation { get; init; } = new(double.NaN);
 
+    /// <summary>The value of an output that can be limited, SI; speeds relative to design.</summary>
+    /// <exception cref="ArgumentException">This engine has no such output.</exception>
+    public double Value(Quantity quantity) =>
+        quantity switch
+        {
+            Quantity.NetThrust => NetThrust,
+            Quantity.FuelFlow => FuelFlow,
+            Quantity.T3 => Station("3").TotalTemperature,
+            Quantity.P3 => Station("3").TotalPressure,
+            Quantity.T4 => T4,
+            Quantity.T41 => T41,
+            Quantity.T45 => T45,
+            Quantity.T5 => Station("5").TotalTemperature,
+            Quantity.Epr => EnginePressureRatio,
+            Quantity.Lever => LeverPosition,
+            Quantity.CorrectedN1 => Compressors[0].RelativeCorrectedSpeed,
+            _ when quantity - Quantity.N1 is var spool and >= 0 && spool < Spools.Count => Spools[spool].RelativeSpeed,
+            _ => throw new ArgumentException($"{EngineName} has no {quantity}.", nameof(quantity)),
+        };
+
     public StationReport Station(string number) =>
         Stations.FirstOrDefault(s => s.Number == number)
         ?? throw new KeyNotFoundException(
