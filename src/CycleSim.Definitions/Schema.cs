@@ -327,15 +327,7 @@ internal static class Schema
                     Default: "as the bypass stream",
                     Example: "0.91"
                 ),
-                new(
-                    "reynolds_exponent",
-                    Dimension.Number,
-                    "n in (1 - efficiency) ~ Re^-n against the design point; 0 leaves the effect out, 0.1 to 0.2 is usual.",
-                    0,
-                    0.5,
-                    Default: "0",
-                    Example: "0.1"
-                ),
+                ReynoldsExponent,
                 new(
                     "gear_ratio",
                     Dimension.Number,
@@ -388,25 +380,8 @@ internal static class Schema
                     LeastAllowed: false,
                     Example: "0.905"
                 ),
-                new(
-                    "reynolds_exponent",
-                    Dimension.Number,
-                    "n in (1 - efficiency) ~ Re^-n against the design point; 0 leaves the effect out, 0.1 to 0.2 is usual.",
-                    0,
-                    0.5,
-                    Default: "0",
-                    Example: "0.1"
-                ),
-                new(
-                    "inlet_duct_loss",
-                    Dimension.Share,
-                    "Total-pressure loss of the duct ahead at the design point.",
-                    0,
-                    0.5,
-                    MostAllowed: false,
-                    Default: "0",
-                    Example: "\"1 %\""
-                ),
+                ReynoldsExponent,
+                InletDuctLoss,
             ],
             true
         ),
@@ -559,25 +534,8 @@ internal static class Schema
                     LeastAllowed: false,
                     Example: "0.88"
                 ),
-                new(
-                    "reynolds_exponent",
-                    Dimension.Number,
-                    "n in (1 - efficiency) ~ Re^-n against the design point; 0 leaves the effect out, 0.1 to 0.2 is usual.",
-                    0,
-                    0.5,
-                    Default: "0",
-                    Example: "0.1"
-                ),
-                new(
-                    "inlet_duct_loss",
-                    Dimension.Share,
-                    "Total-pressure loss of the duct ahead at the design point.",
-                    0,
-                    0.5,
-                    MostAllowed: false,
-                    Default: "0",
-                    Example: "\"1 %\""
-                ),
+                ReynoldsExponent,
+                InletDuctLoss,
                 new(
                     "stages",
                     Dimension.Whole,
@@ -809,6 +767,29 @@ internal static class Schema
             ]
         ),
     ];
+
+    private static KeySpec ReynoldsExponent =>
+        new(
+            "reynolds_exponent",
+            Dimension.Number,
+            "n in (1 - efficiency) ~ Re^-n against the design point; 0 leaves the effect out, 0.1 to 0.2 is usual.",
+            0,
+            0.5,
+            Default: "0",
+            Example: "0.1"
+        );
+
+    private static KeySpec InletDuctLoss =>
+        new(
+            "inlet_duct_loss",
+            Dimension.Share,
+            "Total-pressure loss of the duct ahead at the design point.",
+            0,
+            0.5,
+            MostAllowed: false,
+            Default: "0",
+            Example: "\"1 %\""
+        );
 
     public static TableSpec? Find(string table) => Tables.FirstOrDefault(t => t.Name == table);
 
