@@ -156,8 +156,11 @@ internal static class FlatRatingCommand
             ),
             left: 0
         );
-        foreach (var row in s.Rows.Where(r => r.Point is null))
+        var without = s.Rows.Where(r => r.Point is null).ToList();
+        foreach (var row in without.Take(5))
             Layout.Line($"No point at {d.Temperature(row.OutsideTemperature)} {d.TemperatureUnit}: {row.Reason}");
+        if (without.Count > 5)
+            Layout.Line($"... and {without.Count - 5} more; --json gives every reason.");
         Layout.Line(
             $"The stations behind a row: cyclesim point {loaded.Source} --rating {s.Rating} --altitude \"{Display.Fixed(s.PressureAltitude, 0)} m\" --mach {Display.Fixed(s.Mach, 3)} --temperature \"{Display.Fixed(s.BreakTemperature, 2)} K\""
         );

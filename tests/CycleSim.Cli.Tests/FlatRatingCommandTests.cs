@@ -96,6 +96,33 @@ public class FlatRatingCommandTests
     }
 
     [Fact]
+    public void A_gas_without_humidity_is_not_asked_for_a_humid_day()
+    {
+        var path = Path.Combine(Path.GetTempPath(), Path.GetRandomFileName() + ".toml");
+        try
+        {
+            File.WriteAllText(
+                path,
+                Definitions
+                    .EngineLibrary.Text("velda-27")
+                    .Replace(
+                        "model = \"thermally perfect\"",
+                        "model = \"constant\"\nair_cp = \"1005 J/(kg K)\"\nair_gamma = 1.4\nburnt_cp = \"1148 J/(kg K)\"\nburnt_gamma = 1.333"
+                    )
+            );
+            var run = CommandLine.Run("flat-rating", path, "--humidity", "60 %");
+            Assert.Equal(4, run.ExitCode);
+            Assert.Contains("carries no humidity", run.Error);
+            Assert.Equal("", run.Output);
+            Assert.Equal(0, CommandLine.Run("flat-rating", path).ExitCode);
+        }
+        finally
+        {
+            File.Delete(path);
+        }
+    }
+
+    [Fact]
     public void Engines_are_listed_and_shown()
     {
         Assert.Contains("velda-27", CommandLine.Run("engines").Output);

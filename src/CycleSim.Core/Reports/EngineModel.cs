@@ -39,7 +39,12 @@ public sealed class EngineModel
     }
 
     /// <summary>Inputs for a flight condition with the definition's bleeds and offtakes; change what differs.</summary>
-    public double[] Inputs(in FlightCondition flight) => Layout.Defaults(Engine.Definition, flight);
+    /// <exception cref="NoSolutionException">Humid air, and a gas that carries no humidity.</exception>
+    public double[] Inputs(in FlightCondition flight)
+    {
+        Check(flight);
+        return Layout.Defaults(Engine.Definition, flight);
+    }
 
     /// <summary>The point at which one output takes a value in SI (speeds relative to design).</summary>
     /// <exception cref="NoSolutionException">No such point; the message says what stood in the way.</exception>
