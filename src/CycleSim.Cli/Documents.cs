@@ -177,6 +177,7 @@ internal static class Documents
                 ["power_offtake_W"] = Number(s.Offtake),
             }
         );
+        o["fan_speed_rpm"] = Number(p.FanRpm);
         o["nozzles"] = Array(
             p.Nozzles,
             n => new JsonObject

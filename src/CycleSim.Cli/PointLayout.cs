@@ -121,6 +121,8 @@ internal static class PointLayout
                 new[] { s.Name, Display.Percent(s.RelativeSpeed), Display.Fixed(s.Rpm, 0), d.Power(s.Offtake) }
             )
         );
+        if (double.IsFinite(p.FanRpm))
+            Layout.Line($"Fan {Display.Fixed(p.FanRpm, 0)} rpm.");
         Layout.Table(
             "Nozzles",
             [

@@ -149,6 +149,14 @@ public class PointCommandTests
     }
 
     [Fact]
+    public void A_geared_fan_turns_slower_than_its_spool()
+    {
+        var run = CommandLine.Run("point", "lunde-14g", "--design", "--json");
+        // 9400 rpm and a gear ratio of 0.33 in the definition.
+        Assert.Equal(9400.0 * 0.33, run.Number("fan_speed_rpm"), 1e-6);
+    }
+
+    [Fact]
     public void What_is_left_before_each_limit_is_shown()
     {
         var rated = CommandLine.Run(

@@ -61,6 +61,9 @@ public sealed record OperatingPoint
 
     public required IReadOnlyList<SpoolReport> Spools { get; init; }
 
+    /// <summary>Speed of the fan, revolutions per minute: that of its spool times the gear ratio. NaN where not known.</summary>
+    public double FanRpm { get; init; } = double.NaN;
+
     public required IReadOnlyList<NozzleReport> Nozzles { get; init; }
 
     public required IReadOnlyList<StreamReport> Air { get; init; }

@@ -57,6 +57,7 @@ public sealed class PointReporter
             Compressors = Compressors(gas),
             Turbines = Turbines(),
             Spools = Spools(),
+            FanRpm = FanRpm(),
             Nozzles = Nozzles(),
             Air = Streams(gas),
             Audit = PointAudit.Draw(_engine, _path, gas),
@@ -199,6 +200,11 @@ public sealed class PointReporter
 
         return list;
     }
+
+    private double FanRpm() =>
+        _engine.Fan is { } fan && _engine.Spools[fan.Spool].Speed > 0.0
+            ? _engine.Spools[fan.Spool].Speed * _path.Unknowns[fan.Spool].Value * _engine.Definition.Fan!.GearRatio
+            : double.NaN;
 
     private List<SpoolReport> Spools()
     {
