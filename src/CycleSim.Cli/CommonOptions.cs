@@ -201,6 +201,14 @@ internal sealed class CommonOptions
             result.GetValue(o) is not null
         ) || new[] { Bleed, Offtake, Worn }.Any(o => result.GetValue(o) is { Length: > 0 });
 
+    /// <summary>The loads of this command line as options of another one; empty without any.</summary>
+    public string LoadsAsOptions(ParseResult result) =>
+        string.Concat(
+            new[] { Bleed, Offtake, Worn }.SelectMany(o =>
+                (result.GetValue(o) ?? []).Select(text => $" {o.Name} \"{text}\"")
+            )
+        ) + (result.GetValue(Humidity) is { } humidity ? $" {Humidity.Name} \"{humidity}\"" : "");
+
     private static int HealthInput(SizedEngine engine, string name)
     {
         var words = name.Split(' ', StringSplitOptions.RemoveEmptyEntries);

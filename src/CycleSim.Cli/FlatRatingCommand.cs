@@ -71,7 +71,13 @@ internal static class FlatRatingCommand
             if (result.GetValue(common.Json))
                 Documents.Print(Documents.Of(study, loaded));
             else
-                Print(study, loaded, common.Display(result));
+                Print(
+                    study,
+                    loaded,
+                    common.Display(result),
+                    result.GetValue(common.Altitude) ?? "0 m",
+                    common.LoadsAsOptions(result)
+                );
             return ExitCode.Done;
         });
         return command;
@@ -94,7 +100,7 @@ internal static class FlatRatingCommand
         return [.. Enumerable.Range(0, count).Select(i => from + i * step)];
     }
 
-    private static void Print(FlatRatingResult s, LoadedDefinition loaded, Display d)
+    private static void Print(FlatRatingResult s, LoadedDefinition loaded, Display d, string altitude, string loads)
     {
         Layout.Line(
             $"{s.Engine}, rating {s.Rating}: {d.Altitude(s.PressureAltitude)} {d.AltitudeUnit} pressure altitude, Mach {Display.Fixed(s.Mach, 3)}"
@@ -139,7 +145,7 @@ internal static class FlatRatingCommand
             s.Rows.Select(r =>
                 (string[])
                     [
-                        d.Temperature(r.OutsideTemperature),
+                        d.Temperature(r.OutsideTemperature, 2),
                         d.Difference(r.IsaOffset),
                         .. r.Point is { } p
                             ? new[] { r.Governing, d.Force(p.NetThrust), Display.Percent(p.NetThrust / s.FlatThrust) }
@@ -162,7 +168,7 @@ internal static class FlatRatingCommand
         if (without.Count > 5)
             Layout.Line($"... and {without.Count - 5} more; --json gives every reason.");
         Layout.Line(
-            $"The stations behind a row: cyclesim point {loaded.Source} --rating {s.Rating} --altitude \"{Display.Fixed(s.PressureAltitude, 0)} m\" --mach {Display.Fixed(s.Mach, 3)} --temperature \"{Display.Fixed(s.BreakTemperature, 2)} K\""
+            $"The stations behind a row: cyclesim point {loaded.Source} --rating {s.Rating} --altitude \"{altitude}\" --mach {Display.Fixed(s.Mach, 4)} --temperature \"{Display.Fixed(s.BreakTemperature, 2)} K\"{loads}"
         );
         Layout.Line(
             FormattableString.Invariant(

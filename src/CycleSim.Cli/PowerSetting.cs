@@ -83,6 +83,12 @@ internal sealed class PowerSetting
             Dimension.Number => CommonOptions.Plain(choice.Option.Name, text),
             _ => CommonOptions.Quantity(result, choice.Option, choice.Dimension, ""),
         };
+        if (choice.Quantity == Quantity.Lever && value is not (>= 0.0 and <= 1.0))
+            throw new UsageException($"--lever: '{text}' must lie between 0 % (idle) and 100 % (full).");
+        if (choice.Dimension == Dimension.Share && value > 2.0)
+            throw new UsageException(
+                $"{choice.Option.Name}: '{text}' is {value * 100.0:0} % of design; write a share such as \"95 %\"."
+            );
         return model.At(flight, choice.Quantity, value, inputs);
     }
 

@@ -73,7 +73,7 @@ internal static class SurgeMarginCommand
                 "flow %",
                 "speed %",
                 "needed %",
-                "slack pt",
+                "slack (flow) pt",
                 $"altitude {d.AltitudeUnit}",
                 "Mach",
                 $"ISA {d.DifferenceUnit}",
@@ -102,6 +102,15 @@ internal static class SurgeMarginCommand
             s.Budgets.Select(b =>
                 (string[])[b.Compressor, .. b.Allowances.Select(a => Display.Percent(a.Allowance, 1))]
             )
+        );
+        var shortOf = s.Budgets.Where(b => b.Slack < 0.0).Select(b => b.Compressor).ToList();
+        Layout.Line(
+            shortOf.Count > 0
+                ? $"Short of what is needed somewhere in the survey: {string.Join(", ", shortOf)}."
+                : "Every compressor has what is needed everywhere in the survey."
+        );
+        Layout.Line(
+            "Surveyed: sea level to 12 500 m, up to 350 kt calibrated and Mach 0.88, ISA -20 to +20 K; the rating is taken everywhere, also where it would not be used."
         );
         foreach (var reason in s.WithoutSolution.Take(5))
             Layout.Line("No point: " + reason);

@@ -139,6 +139,8 @@ public class PointCommandTests
     [InlineData("is not an air port", "--altitude", "0 m", "--T4", "1400 K", "--bleed", "custom=2 %")]
     [InlineData("between 0 and 100 %", "--altitude", "0 m", "--T4", "1400 K", "--bleed", "customer-bleed=120 %")]
     [InlineData("is not a spool", "--altitude", "0 m", "--T4", "1400 K", "--offtake", "middle=2 kW")]
+    [InlineData("between 0 % (idle) and 100 % (full)", "--altitude", "0 m", "--lever", "-10 %")]
+    [InlineData("write a share", "--altitude", "0 m", "--N1", "3800")]
     [InlineData("170 to 340 K", "--altitude", "0 m", "--temperature", "400 K", "--T4", "1400 K")]
     public void A_command_line_that_means_nothing_gives_no_number(string message, params string[] arguments)
     {

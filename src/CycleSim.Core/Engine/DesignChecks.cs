@@ -96,8 +96,8 @@ internal static class DesignChecks
         if (!(total > ambient * 1.0005))
             throw new SizingException(
                 $"{definition.Name}: the {which} nozzle has {total / 1000.0:F1} kPa to expand to {ambient / 1000.0:F1} kPa; "
-                    + "there is no jet. The turbines take too much work: raise T4, or lower the bypass ratio or the fan "
-                    + "pressure ratio."
+                    + "there is no jet. The turbines take too much work: raise T4, or lower the bypass ratio, the fan "
+                    + "pressure ratio or the core's."
             );
     }
 }
