@@ -7,7 +7,7 @@ public static class DryAir
     public static readonly IReadOnlyList<(string Species, double Fraction)> MoleFractions =
     [
         ("N2", 0.78084),
-        ("O2", 0.209476),
+        ("O2", Oxygen),
         ("Ar", 0.009365),
         ("CO2", 0.000319),
     ];

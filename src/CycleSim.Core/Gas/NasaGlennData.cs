@@ -4,14 +4,18 @@ namespace CycleSim.Gas;
 
 /// <summary>
 /// The nine-coefficient data of one species: cp/R = a1/T2 + a2/T + a3 + a4 T + a5 T2 + a6 T3 + a7 T4, with integration
-/// constants b1 (enthalpy) and b2 (entropy), in two ranges that meet at 1000 K.
+/// constants b1 (enthalpy) and b2 (entropy), in two ranges that meet at 1000 K or in one. Immutable.
 /// </summary>
+/// <remarks>Temperatures outside the ranges of the species are refused.</remarks>
 public sealed class NasaSpecies
 {
     private readonly double[][] _ranges;
 
-    internal NasaSpecies(string name, double molarMass, double formationEnthalpy, double[][] ranges) =>
-        (Name, MolarMass, FormationEnthalpy, _ranges) = (name, molarMass, formationEnthalpy, ranges);
+    // Where the ranges begin and, last, end.
+    private readonly double[] _limits;
+
+    internal NasaSpecies(string name, double molarMass, double formationEnthalpy, double[] limits, double[][] ranges) =>
+        (Name, MolarMass, FormationEnthalpy, _limits, _ranges) = (name, molarMass, formationEnthalpy, limits, ranges);
 
     public string Name { get; }
 
@@ -21,8 +25,14 @@ public sealed class NasaSpecies
     /// <summary>Enthalpy of formation at 298.15 K, J/mol.</summary>
     public double FormationEnthalpy { get; }
 
+    /// <summary>Lowest temperature of the data, K.</summary>
+    public double LowestTemperature => _limits[0];
+
+    /// <summary>Highest temperature of the data, K.</summary>
+    public double HighestTemperature => _limits[^1];
+
     /// <summary>a1 to a7, b1, b2 below (0) or above (1) 1000 K.</summary>
-    public double[] Coefficients(int range) => _ranges[range];
+    public ReadOnlySpan<double> Coefficients(int range) => _ranges[range];
 
     /// <summary>h/(R T), dimensionless, at a temperature in K, enthalpy of formation included.</summary>
     public double EnthalpyOverRT(double t)
@@ -53,7 +63,15 @@ public sealed class NasaSpecies
         return a[0] / (t * t) + a[1] / t + a[2] + t * (a[3] + t * (a[4] + t * (a[5] + t * a[6])));
     }
 
-    private double[] At(double t) => _ranges[t < 1000.0 || _ranges.Length == 1 ? 0 : 1];
+    private double[] At(double t)
+    {
+        if (!(t >= LowestTemperature && t <= HighestTemperature))
+            throw new ArgumentOutOfRangeException(
+                nameof(t),
+                $"The data of {Name} reach from {LowestTemperature} to {HighestTemperature} K; {t:G6} K was asked for."
+            );
+        return _ranges[_ranges.Length == 1 || t < _limits[1] ? 0 : 1];
+    }
 }
 
 /// <summary>The species data shipped with the library.</summary>
@@ -91,6 +109,7 @@ public static class NasaGlennData
                     group.Key,
                     Number(group.First()[1]) * 1e-3,
                     Number(group.First()[2]),
+                    [Number(group.First()[3]), .. group.Select(row => Number(row[4]))],
                     [.. group.Select(row => row[5..14].Select(Number).ToArray())]
                 )
             );
