@@ -14,7 +14,8 @@ public sealed record Fuel(string Name, double Carbon, double Hydrogen, double Lo
     /// Jet A-1 as C12H23. The heating value is the one that the enthalpy of formation of the liquid in the NASA Glenn data
     /// (-303 403 J/mol) amounts to, 43.03 MJ/kg; specifications ask for at least 42.8, deliveries give 43.0 to 43.2.
     /// </summary>
-    public static Fuel JetA1 { get; } = FromFormation("Jet A-1", 12.0, 23.0, -303403.0);
+    public static Fuel JetA1 { get; } =
+        FromFormation("Jet A-1", 12.0, 23.0, NasaGlennData.Species("Jet-A(L)").FormationEnthalpy);
 
     /// <summary>Hydroprocessed esters and fatty acids, neat, as C12H26; 44.1 MJ/kg.</summary>
     public static Fuel Hefa { get; } = new("HEFA", 12.0, 26.0, 44.1e6);
@@ -29,6 +30,12 @@ public sealed record Fuel(string Name, double Carbon, double Hydrogen, double Lo
     public double StoichiometricFuelAirRatio =>
         MolarMass * DryAir.Oxygen / ((Carbon + Hydrogen / 4.0) * DryAir.MolarMass);
 
+    /// <summary>kg CO2 formed by a kilogram of fuel.</summary>
+    public double CarbonDioxideIndex => Carbon * NasaGlennData.Species("CO2").MolarMass / MolarMass;
+
+    /// <summary>kg water formed by a kilogram of fuel.</summary>
+    public double WaterIndex => Hydrogen / 2.0 * NasaGlennData.Species("H2O").MolarMass / MolarMass;
+
     /// <summary>Enthalpy of formation of the fuel as burnt, J/mol, that goes with the heating value.</summary>
     public double FormationEnthalpy => ProductsFormation(Carbon, Hydrogen) + LowerHeatingValue * MolarMass;
 
@@ -37,6 +44,21 @@ public sealed record Fuel(string Name, double Carbon, double Hydrogen, double Lo
     {
         var mass = carbon * CarbonMass + hydrogen * HydrogenMass;
         return new Fuel(name, carbon, hydrogen, (formationEnthalpy - ProductsFormation(carbon, hydrogen)) / mass);
+    }
+
+    /// <exception cref="ArgumentException">No fuel can have these values; the message says which.</exception>
+    internal void ThrowIfUnusable()
+    {
+        if (!(Carbon >= 0.0 && Hydrogen >= 0.0 && Carbon + Hydrogen > 0.0 && double.IsFinite(Carbon + Hydrogen)))
+            throw new ArgumentException(
+                $"A molecule of {Name} must hold carbon or hydrogen, neither below 0 and both finite; {Carbon:G5} carbon "
+                    + $"and {Hydrogen:G5} hydrogen atoms were given."
+            );
+        if (LowerHeatingValue is not (>= 1e6 and <= 2e8))
+            throw new ArgumentException(
+                $"The lower heating value of {Name} must lie between 1e6 and 2e8 J/kg; {LowerHeatingValue:G5} was given. "
+                    + "43 MJ/kg is 43e6 J/kg."
+            );
     }
 
     private static double ProductsFormation(double carbon, double hydrogen) =>
