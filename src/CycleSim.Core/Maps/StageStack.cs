@@ -19,24 +19,30 @@ public sealed record StageDefinition
     /// <summary>Stage pressure ratio at the design point, where it is known; the efficiency then follows from the work.</summary>
     public double PressureRatio { get; init; }
 
-    /// <summary>Pressure coefficient at the top of the characteristic and the flow coefficient there, over design.</summary>
+    /// <summary>
+    /// Pressure coefficient at the vertex of the characteristic and flow coefficient at which the stage stalls, both over
+    /// design; with <see cref="Shape"/> 0 the vertex lies there.
+    /// </summary>
     public double PeakPressure { get; init; } = 1.12;
 
     public double PeakFlow { get; init; } = 0.80;
 
     /// <summary>
-    /// How far the parabola's vertex lies from the peak: 0 puts it there, positive values make the characteristic fall more
-    /// steeply beyond the design point.
+    /// How far the parabola's vertex lies beyond the stall point, over the way there from design; above -1. Positive values put
+    /// it at a lower flow and make the characteristic flatter about the design point, negative ones steeper.
     /// </summary>
     public double Shape { get; init; }
 
     /// <summary>
-    /// Variable stator: relative reduction of the design flow coefficient per unit of relative corrected speed below 1; 0
-    /// for a fixed one.
+    /// Variable stator: relative reduction of the design flow coefficient per unit of relative corrected speed below 1, 0 to
+    /// 5; 0 for a fixed one. At and above design speed the stator stands as designed.
     /// </summary>
     public double StatorReset { get; init; }
 
-    /// <summary>Share of the compressor's inlet flow bled behind this stage.</summary>
+    /// <summary>
+    /// Share of the compressor's inlet flow bled behind this stage at the design point and at every other; the annulus behind
+    /// is made for what is left. See <see cref="StageStack.WithBleed"/> for bleed that is opened off design.
+    /// </summary>
     public double Bleed { get; init; }
 }
 
@@ -44,7 +50,7 @@ public sealed record StageDefinition
 /// <param name="PressureRatio">product of the stages'</param>
 /// <param name="Efficiency">isentropic, of the whole</param>
 /// <param name="LeastMargin">
-/// smallest flow coefficient over that of the characteristic's top, over all stages; below 1 that stage is stalled
+/// smallest flow coefficient over that at which the stage stalls, over all stages; below 1 that stage is stalled
 /// </param>
 /// <param name="Critical">the stage that has it, 0 for the first</param>
 /// <param name="ExitCorrectedFlow">W sqrt(T)/P at the exit over its value at the design point</param>
@@ -63,8 +69,10 @@ public readonly record struct StackPoint(
 /// <remarks>
 /// Characteristics in the form used by Muir, Saravanamuttoo and Marshall (ASME J. Eng. Gas Turbines Power 111, 1989, from
 /// memory): pressure coefficient psi* = peak - (peak - 1) ((x - phi*) / (x - 1))^2 with x the vertex, efficiency over
-/// r = psi*/phi* with exponent 3.5 on the lightly loaded side and 2 on the heavily loaded one. A variable stator shifts its
-/// stage's characteristic along the flow coefficient (own simplification). Air is thermally perfect and enters at 288.15 K and
+/// r = psi*/phi* with exponent 3.5 on the lightly loaded side and 2 on the heavily loaded one. Below the lightly loaded end
+/// of that curve the efficiency goes to zero with the load (own continuation), so that the work of a stage near choke stays
+/// about what it was there: zeta* = phi* r_L / eta_L, near the textbook line of constant outlet angles. A variable stator
+/// shifts its stage's characteristic along the flow coefficient (own simplification). Air is thermally perfect and enters at 288.15 K and
 /// one atmosphere; results are in corrected terms.
 /// </remarks>
 public sealed class StageStack
@@ -81,6 +89,7 @@ public sealed class StageStack
     private static readonly ThermallyPerfectGas Air = ThermallyPerfectGas.For(Fuel.JetA1);
 
     private readonly StageDefinition[] _stages;
+    private readonly double[] _bleed;
     private readonly double[] _area;
     private readonly double[] _pressureCoefficient;
     private readonly double _exitFlow;
@@ -96,6 +105,7 @@ public sealed class StageStack
         if (stages.Sum(s => s.Bleed) >= 1.0)
             throw new ArgumentException("The stages bleed more than comes in.", nameof(stages));
         _stages = [.. stages];
+        _bleed = [.. stages.Select(s => s.Bleed)];
         _area = new double[_stages.Length];
         _pressureCoefficient = new double[_stages.Length];
         Air.AtTemperature(InletTemperature, 0.0, 0.0, out _inlet);
@@ -132,8 +142,47 @@ public sealed class StageStack
             ?? throw new ArgumentException("The stages do not pass their own design flow.", nameof(stages));
     }
 
-    /// <summary>The design point: product of the stages' pressure ratios, efficiency of the whole.</summary>
+    private StageStack(StageStack built, double[] bleed)
+    {
+        (_stages, _bleed, _area) = (built._stages, bleed, built._area);
+        (_pressureCoefficient, _exitFlow, _inlet) = (built._pressureCoefficient, built._exitFlow, built._inlet);
+        Design = built.Design;
+    }
+
+    /// <summary>
+    /// The design point, as built: product of the stages' pressure ratios, efficiency of the whole (the ideal work of all the
+    /// air to the exit pressure over the work done on what reaches the exit, per kilogram).
+    /// </summary>
     public StackPoint Design { get; }
+
+    /// <summary>
+    /// The same compressor with a bleed port opened: a further share of the inlet flow leaves behind a stage, the annulus stays
+    /// as built. It unloads the front stages at part speed.
+    /// </summary>
+    /// <param name="stage">1 for the first</param>
+    /// <param name="share">of the inlet flow, 0 and above; all ports together below 1</param>
+    /// <exception cref="ArgumentException">There is no such stage, or more is bled than comes in.</exception>
+    public StageStack WithBleed(int stage, double share)
+    {
+        if (stage < 1 || stage > _stages.Length)
+            throw new ArgumentException(
+                $"Bleed behind stage {stage}: there is no such stage; expected 1 to {_stages.Length}.",
+                nameof(stage)
+            );
+        if (!(share >= 0.0))
+            throw new ArgumentException(
+                $"Bleed behind stage {stage}: the share is {share}; expected 0 or more of the inlet flow.",
+                nameof(share)
+            );
+        var bleed = (double[])_bleed.Clone();
+        bleed[stage - 1] += share;
+        if (!(bleed.Sum() < 1.0))
+            throw new ArgumentException(
+                $"Bleed behind stage {stage}: all ports together take {bleed.Sum():P0} of the inlet flow; expected less than all.",
+                nameof(share)
+            );
+        return new StageStack(this, bleed);
+    }
 
     public int StageCount => _stages.Length;
 
@@ -141,8 +190,13 @@ public sealed class StageStack
     /// The stack at a relative corrected speed and inlet corrected flow (1 at design); null where a stage chokes or no longer
     /// compresses.
     /// </summary>
+    /// <exception cref="ArgumentOutOfRangeException">Speed or flow is not above zero.</exception>
     public StackPoint? At(double speed, double flow)
     {
+        if (!(speed > 0.0) || !double.IsFinite(speed))
+            throw new ArgumentOutOfRangeException(nameof(speed), speed, "Expected a relative speed above zero.");
+        if (!(flow > 0.0) || !double.IsFinite(flow))
+            throw new ArgumentOutOfRangeException(nameof(flow), flow, "Expected a relative flow above zero.");
         double w = flow,
             p = InletPressure,
             least = double.PositiveInfinity;
@@ -154,7 +208,7 @@ public sealed class StageStack
             var u = stage.BladeSpeed * speed;
             if (AxialSpeed(state, p, w / _area[i]) is not { } axial)
                 return null;
-            var reset = Math.Max(0.2, 1.0 - stage.StatorReset * (1.0 - speed));
+            var reset = Math.Max(0.2, 1.0 - stage.StatorReset * Math.Max(0.0, 1.0 - speed));
             var phi = axial / u / (stage.FlowCoefficient * reset);
             var margin = phi / stage.PeakFlow;
             if (margin < least)
@@ -169,7 +223,7 @@ public sealed class StageStack
             // Isentropic efficiency at design from the polytropic one: ideal over real work there.
             var designEfficiency = _pressureCoefficient[i] / stage.WorkCoefficient;
             Air.AtEnthalpy(state.H + ideal / (efficiency * designEfficiency), 0.0, 0.0, out state);
-            w -= stage.Bleed * flow;
+            w -= _bleed[i] * flow;
         }
 
         var ratio = p / InletPressure;
@@ -233,7 +287,9 @@ public sealed class StageStack
     private static double Efficiency(StageDefinition stage, double load)
     {
         if (load <= 1.0)
-            return Math.Max(0.2, 1.0 - (1.0 - LightEfficiency) * Math.Pow((1.0 - load) / (1.0 - LightLoad), 3.5));
+            return load < LightLoad
+                ? LightEfficiency * load / LightLoad
+                : 1.0 - (1.0 - LightEfficiency) * Math.Pow((1.0 - load) / (1.0 - LightLoad), 3.5);
         var stall = stage.PeakPressure / stage.PeakFlow;
         var over = (load - 1.0) / (stall - 1.0);
         return Math.Max(0.2, 1.0 - (1.0 - StallEfficiency) * over * over);
@@ -273,6 +329,8 @@ public sealed class StageStack
             Refuse("the work coefficient must lie between 0.02 and 1");
         if (stage.BladeSpeed is not (> 50.0 and < 700.0))
             Refuse("the blade speed must lie between 50 and 700 m/s");
+        if (!(stage.PressureRatio >= 0.0) || !(stage.PolytropicEfficiency >= 0.0))
+            Refuse("a pressure ratio or an efficiency must be a number above zero");
         if (stage.PressureRatio > 0.0 == stage.PolytropicEfficiency > 0.0)
             Refuse("give either a pressure ratio or an efficiency");
         if (stage.PressureRatio > 0.0 && stage.PressureRatio is not (> 1.0 and < 4.0))
@@ -283,5 +341,9 @@ public sealed class StageStack
             Refuse("the top of the characteristic must lie at a flow of 0.3 to 0.99 and a pressure of 1 to 2");
         if (stage.Bleed is not (>= 0.0 and < 1.0))
             Refuse("the bleed must lie between 0 and 1");
+        if (stage.Shape is not (> -0.95 and < 5.0))
+            Refuse("the shape must lie between -0.95 and 5; at -1 the vertex would lie on the design point");
+        if (stage.StatorReset is not (>= 0.0 and <= 5.0))
+            Refuse("the stator reset must lie between 0 and 5 per unit of speed");
     }
 }
