@@ -10,31 +10,18 @@ public static class StackedMap
 
     /// <summary>
     /// Stacks the stages at every speed of the grid; below the lowest at which they go together the lines go on by the law of
-    /// <see cref="CompressorShape"/>.
+    /// <see cref="CompressorShape"/>. Above design speed the map ends with the last speed at which they do.
     /// </summary>
     /// <exception cref="ArgumentException">The stages do not go together at design speed, or the design point is past surge.</exception>
     public static PlacedMap Build(StageStack stack)
     {
+        var founded = Founded(stack);
+        var lowest = founded.Keys.First();
         var speeds = new List<double>();
-        for (var n = LowestSpeed; n < HighestSpeed + 1e-9; n += Step)
-            speeds.Add(Math.Round(n, 6));
-        var lines = new double[speeds.Count][,];
-        var lowest = speeds.Count;
-        for (var i = speeds.Count - 1; i >= 0; i--)
-        {
-            if (Resample(stack.SpeedLine(speeds[i])) is not { } line)
-                break;
-            (lines[i], lowest) = (line, i);
-        }
-
-        var design = speeds.IndexOf(1.0);
-        if (lowest > design)
-            throw new ArgumentException(
-                "The stages do not go together at design speed: one of them stalls or chokes before the others work. "
-                    + "Check flow coefficients and the tops of the characteristics."
-            );
-        for (var i = 0; i < lowest; i++)
-            lines[i] = Extend(lines[lowest], speeds[lowest], speeds[i]);
+        for (var n = LowestSpeed; n < lowest - 1e-9; n = Grid(n + Step))
+            speeds.Add(n);
+        var lines = speeds.Select(n => Extend(founded[lowest], lowest, n)).Concat(founded.Values).ToArray();
+        speeds.AddRange(founded.Keys);
 
         var betas = new double[Positions];
         for (var j = 0; j < Positions; j++)
@@ -46,8 +33,33 @@ public static class StackedMap
         for (var j = 0; j < Positions; j++)
             (flow[i, j], ratio[i, j], efficiency[i, j]) = (lines[i][j, 0], lines[i][j, 1], lines[i][j, 2]);
         var map = new CompressorMap([.. speeds], betas, flow, ratio, efficiency);
-        return new PlacedMap(map, DesignPosition(map, stack.Design.PressureRatio), speeds[lowest]);
+        return new PlacedMap(map, DesignPosition(map, stack.Design.PressureRatio), lowest);
     }
+
+    /// <summary>The lines from the lowest speed to the highest at which the stages go together, without a gap about 1.</summary>
+    private static SortedDictionary<double, double[,]> Founded(StageStack stack)
+    {
+        var lines = new SortedDictionary<double, double[,]>();
+        void Go(double from, double step)
+        {
+            for (var n = from; n > LowestSpeed - 1e-9 && n < HighestSpeed + 1e-9; n = Grid(n + step))
+                if (Resample(stack.SpeedLine(n)) is { } line)
+                    lines.Add(n, line);
+                else
+                    return;
+        }
+
+        Go(1.0, -Step);
+        if (lines.Count == 0)
+            throw new ArgumentException(
+                "The stages do not go together at design speed: one of them stalls or chokes before the others work. "
+                    + "Check flow coefficients and the tops of the characteristics."
+            );
+        Go(Grid(1.0 + Step), Step);
+        return lines;
+    }
+
+    private static double Grid(double speed) => Math.Round(speed, 6);
 
     /// <summary>
     /// Puts a line on evenly spaced positions from choke (0) to surge (1), spaced by the length along it with flow and

@@ -80,6 +80,12 @@ public sealed class StageStack
     private const double InletTemperature = 288.15,
         InletPressure = 101325.0;
 
+    /// <summary>
+    /// Least flow coefficient of any stage, over that at which it stalls, at which the whole still runs. Front stages of a
+    /// multistage compressor run stalled at part speed without surge of the whole (common practice; the figure has no source).
+    /// </summary>
+    public const double ToleratedStall = 0.88;
+
     // Ends of the efficiency curve, from memory of the published form: what is left where a stage runs almost unloaded and
     // where it stalls.
     private const double LightLoad = 0.35,
@@ -150,8 +156,7 @@ public sealed class StageStack
     }
 
     /// <summary>
-    /// The design point, as built: product of the stages' pressure ratios, efficiency of the whole (the ideal work of all the
-    /// air to the exit pressure over the work done on what reaches the exit, per kilogram).
+    /// The design point, as built: product of the stages' pressure ratios, isentropic efficiency of the air that goes all the way.
     /// </summary>
     public StackPoint Design { get; }
 
@@ -239,11 +244,11 @@ public sealed class StageStack
 
     /// <summary>
     /// The speed line at a relative corrected speed from surge to choke: surge is where the pressure ratio stops rising with
-    /// falling flow or the first stages are past their tops by the tolerated share; empty where the stages do not go together.
+    /// falling flow, or where the first stage is down to <see cref="ToleratedStall"/> of its stalling flow; empty where the stages
+    /// do not go together.
     /// </summary>
     public IReadOnlyList<(double Flow, StackPoint Point)> SpeedLine(double speed, int points = 60)
     {
-        const double ToleratedStall = 0.88;
         var highest = 0.0;
         for (var flow = 1.6; flow > 0.02; flow -= 0.004)
             if (At(speed, flow) is { PressureRatio: > 1.0 })
