@@ -235,10 +235,7 @@ public static class CompressorMapTable
                     $"the pressure ratio does not rise with beta along the line of speed {Text(here.Speed)}: "
                         + $"{Text(grid[i, j - 1].PressureRatio)}, then {Text(here.PressureRatio)}."
                 );
-            if (
-                i > 0
-                && (here.Flow <= grid[i - 1, j].Flow || here.PressureRatio <= grid[i - 1, j].PressureRatio)
-            )
+            if (i > 0 && (here.Flow <= grid[i - 1, j].Flow || here.PressureRatio <= grid[i - 1, j].PressureRatio))
                 Report(
                     $"the line of speed {Text(here.Speed)} crosses that of {Text(grid[i - 1, j].Speed)} (line "
                         + $"{grid[i - 1, j].Line}) at beta {Text(here.Beta)}: flow and pressure ratio must both rise with speed."

@@ -8,6 +8,10 @@ public static class StackedMap
         HighestSpeed = 1.10,
         Step = 0.025;
 
+    // What a line must have to be of use: points, and pressure rise at surge over that at its choked end.
+    private const int FewestPoints = 8;
+    private const double LeastSpan = 1.2;
+
     /// <summary>
     /// Stacks the stages at every speed of the grid; below the lowest at which they go together the lines go on by the law of
     /// <see cref="CompressorShape"/>. Above design speed the map ends with the last speed at which they do.
@@ -67,13 +71,12 @@ public static class StackedMap
     /// </summary>
     private static double[,]? Resample(IReadOnlyList<(double Flow, StackPoint Point)> line)
     {
-        if (line.Count < 8)
+        if (line.Count < FewestPoints)
             return null;
         // From the choked end to surge; what lies below a quarter of the pressure rise is of no use to a working line.
-        var points = line.Reverse().ToList();
-        var most = points[^1].Point.PressureRatio;
-        points = points.SkipWhile(p => p.Point.PressureRatio - 1.0 < 0.25 * (most - 1.0)).ToList();
-        if (points.Count < 6)
+        var most = line[0].Point.PressureRatio;
+        var points = line.Reverse().SkipWhile(p => p.Point.PressureRatio - 1.0 < 0.25 * (most - 1.0)).ToList();
+        if (points.Count < FewestPoints || most - 1.0 < LeastSpan * (points[0].Point.PressureRatio - 1.0))
             return null;
         var length = new double[points.Count];
         for (var k = 1; k < points.Count; k++)

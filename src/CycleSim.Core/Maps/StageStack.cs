@@ -268,9 +268,20 @@ public sealed class StageStack
                 high = middle;
         }
 
+        var step = low / (8.0 * points);
+        var line = Walk(speed, low, step);
+        // A steep line spans little flow: again in finer steps.
+        while (line.Count < points / 2 && step > 1e-5 * low)
+            line = Walk(speed, low, step *= 0.25);
+        line.Reverse();
+        return line;
+    }
+
+    private List<(double Flow, StackPoint Point)> Walk(double speed, double choke, double step)
+    {
         var line = new List<(double, StackPoint)>();
         var peak = 0.0;
-        for (var flow = low; flow > 0.2 * low; flow -= low / (8.0 * points))
+        for (var flow = choke; flow > 0.2 * choke; flow -= step)
         {
             if (At(speed, flow) is not { } point || point.LeastMargin < ToleratedStall || point.PressureRatio < peak)
                 break;
@@ -278,7 +289,6 @@ public sealed class StageStack
             line.Add((flow, point));
         }
 
-        line.Reverse();
         return line;
     }
 
