@@ -456,7 +456,7 @@ internal static class Schema
                 new(
                     "shape",
                     Dimension.Number,
-                    "Distance of the parabola's vertex from the top, over that of the design point from it.",
+                    "How far the parabola's vertex lies beyond the top, over the way there from design; positive is flatter about design.",
                     -0.9,
                     0.9,
                     Default: "0",
