@@ -67,6 +67,16 @@ internal sealed class CommonOptions
 
     public readonly Option<bool> Json = new("--json") { Description = "One JSON document in SI; see JSON.md." };
 
+    public readonly Option<string?> Csv = Text(
+        "--csv",
+        "Also writes the rows to this CSV file, in SI with the unit in every column's name."
+    );
+
+    public readonly Option<string?> Parquet = Text(
+        "--parquet",
+        "Also writes the rows to this Parquet file, in SI, with units and provenance in its metadata."
+    );
+
     public void AddTo(Command command, bool temperature)
     {
         command.Add(Engine);

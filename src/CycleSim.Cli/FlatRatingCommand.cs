@@ -33,6 +33,7 @@ internal static class FlatRatingCommand
               cyclesim flat-rating velda-27 --altitude "6000 ft" --temperatures C
               cyclesim flat-rating velda-27 --rating max-climb --altitude "35000 ft" --mach 0.78
               cyclesim flat-rating velda-27 --bleed "customer-bleed=2 %" --from "20 °C" --to "45 °C" --step "1 K"
+              cyclesim flat-rating velda-27 --csv take-off.csv --parquet take-off.parquet
             """
         )
         {
@@ -40,6 +41,8 @@ internal static class FlatRatingCommand
             from,
             to,
             step,
+            common.Csv,
+            common.Parquet,
         };
         common.AddTo(command, temperature: false);
         command.SetAction(result =>
@@ -68,6 +71,7 @@ internal static class FlatRatingCommand
                 common.HumidityOf(result),
                 common.Loads(result, model.Engine)
             );
+            Exports.Write(result, common, study.Table(Exports.Provenance(result, loaded)));
             if (result.GetValue(common.Json))
                 Documents.Print(Documents.Of(study, loaded));
             else

@@ -2,6 +2,7 @@ namespace CycleSim.Studies
 
 open System
 open System.Collections.Generic
+open System.Globalization
 open System.Runtime.InteropServices
 open CycleSim.Air
 open CycleSim.Engine
@@ -48,7 +49,55 @@ type FlatRatingResult = {
     /// Loss of thrust per kelvin beyond the break, as a share of the flat thrust, over the first ten kelvin.
     LapsePerKelvin: float</ K>
     Rows: IReadOnlyList<FlatRatingRow>
-}
+} with
+
+    /// The rows with thrust, power setting and temperatures, and the break in the provenance.
+    member result.Table(provenance: IReadOnlyList<KeyValuePair<string, string>>) : StudyTable =
+        let rows = Seq.toArray result.Rows
+
+        let numbers name unit (value: OperatingPoint -> float) =
+            let number (row: FlatRatingRow) =
+                match row.Point with
+                | null -> nan
+                | point -> value point
+
+            TableColumn.Of(name, unit, rows |> Array.map number)
+
+        let spools =
+            rows
+            |> Array.tryPick (fun r ->
+                match r.Point with
+                | null -> None
+                | point -> Some point.Spools.Count)
+            |> Option.defaultValue 0
+
+        let entry name (value: float) =
+            KeyValuePair(name, value.ToString("R", CultureInfo.InvariantCulture))
+
+        StudyTable.Of(
+            $"Flat rating {result.Rating} of {result.Engine}",
+            [|
+                yield! provenance
+                entry "pressure_altitude_m" (float result.PressureAltitude)
+                entry "mach" result.Mach
+                entry "flat_thrust_N" (float result.FlatThrust)
+                entry "break_temperature_K" (float result.BreakTemperature)
+            |],
+            [|
+                TableColumn.Of("outside_temperature_K", "K", rows |> Array.map (fun r -> float r.OutsideTemperature))
+                TableColumn.Of("isa_offset_K", "K", rows |> Array.map (fun r -> float r.IsaOffset))
+                TableColumn.OfText("governing", rows |> Array.map _.Governing)
+                numbers "net_thrust_N" "N" _.NetThrust
+                numbers "fuel_flow_kg_per_s" "kg/s" _.FuelFlow
+                numbers "sfc_kg_per_N_s" "kg/(N s)" _.Sfc
+                for spool in 0 .. spools - 1 do
+                    numbers $"N{spool + 1}_relative_speed" "" (fun p -> p.Spools[spool].RelativeSpeed)
+                numbers "engine_pressure_ratio" "" _.EnginePressureRatio
+                numbers "T41_K" "K" _.T41
+                numbers "T45_K" "K" _.T45
+                TableColumn.OfText("reason", rows |> Array.map _.Reason)
+            |]
+        )
 
 /// Flat rating: thrust against outside temperature.
 [<AbstractClass; Sealed>]
