@@ -43,6 +43,14 @@ internal sealed class CommonOptions
             "Air taken by a port of the definition, for instance \"customer-bleed=3 %\" or \"customer-bleed=1.2 kg/s\"; may be repeated.",
     };
 
+    public readonly Option<string[]> Open = new("--open")
+    {
+        Description =
+            "Opens a port to what its definition says, for instance nacelle-anti-ice, which is normally shut; may be repeated.",
+    };
+
+    public readonly Option<string[]> Shut = new("--shut") { Description = "Shuts a port; may be repeated." };
+
     public readonly Option<string[]> Offtake = new("--offtake")
     {
         Description = "Power taken from a spool, for instance \"high=120 kW\"; may be repeated.",
@@ -88,7 +96,9 @@ internal sealed class CommonOptions
             command.Add(Temperature);
         }
 
-        foreach (var option in new Option[] { Humidity, Bleed, Offtake, Worn, UnitSystem, Temperatures, Json })
+        foreach (
+            var option in new Option[] { Humidity, Bleed, Open, Shut, Offtake, Worn, UnitSystem, Temperatures, Json }
+        )
             command.Add(option);
     }
 
@@ -153,15 +163,16 @@ internal sealed class CommonOptions
     public Action<double[]> Loads(ParseResult result, SizedEngine engine)
     {
         var changes = new List<(int Index, double Value)>();
+        var opened = (result.GetValue(Open) ?? []).Select(name => Port("--open", name, engine)).ToList();
+        var shut = (result.GetValue(Shut) ?? []).Select(name => Port("--shut", name, engine)).ToList();
+        if (opened.Intersect(shut).Any())
+            throw new UsageException(
+                $"--open and --shut both name '{engine.Ports[opened.Intersect(shut).First()].Port.Name}'; use one of them."
+            );
         foreach (var text in result.GetValue(Bleed) ?? [])
         {
             var (name, value) = Pair("--bleed", text, "customer-bleed=3 %");
-            var ports = engine.Ports.Select(p => p.Port.Name).ToList();
-            var port = ports.IndexOf(name);
-            if (port < 0)
-                throw new UsageException(
-                    $"--bleed: '{name}' is not an air port of this engine; it has {string.Join(", ", ports)}."
-                );
+            var port = Port("--bleed", name, engine);
             if (value.EndsWith('%') || double.TryParse(value, NumberStyles.Float, CultureInfo.InvariantCulture, out _))
             {
                 var share = Share("--bleed " + name, value);
@@ -200,6 +211,10 @@ internal sealed class CommonOptions
 
         return inputs =>
         {
+            foreach (var port in opened)
+                engine.Layout.Open(engine.Definition, inputs, port);
+            foreach (var port in shut)
+                engine.Layout.Shut(inputs, port);
             foreach (var (index, value) in changes)
                 inputs[index] = value;
         };
@@ -209,15 +224,25 @@ internal sealed class CommonOptions
     public bool GivesConditions(ParseResult result) =>
         new[] { Altitude, Mach, TrueAirspeed, CalibratedAirspeed, Isa, Temperature, Humidity }.Any(o =>
             result.GetValue(o) is not null
-        ) || new[] { Bleed, Offtake, Worn }.Any(o => result.GetValue(o) is { Length: > 0 });
+        ) || new[] { Bleed, Open, Shut, Offtake, Worn }.Any(o => result.GetValue(o) is { Length: > 0 });
 
     /// <summary>The loads of this command line as options of another one; empty without any.</summary>
     public string LoadsAsOptions(ParseResult result) =>
         string.Concat(
-            new[] { Bleed, Offtake, Worn }.SelectMany(o =>
+            new[] { Bleed, Open, Shut, Offtake, Worn }.SelectMany(o =>
                 (result.GetValue(o) ?? []).Select(text => $" {o.Name} \"{text}\"")
             )
         ) + (result.GetValue(Humidity) is { } humidity ? $" {Humidity.Name} \"{humidity}\"" : "");
+
+    private static int Port(string option, string name, SizedEngine engine)
+    {
+        var ports = engine.Ports.Select(p => p.Port.Name).ToList();
+        return ports.IndexOf(name) is var port and >= 0
+            ? port
+            : throw new UsageException(
+                $"{option}: '{name}' is not an air port of this engine; it has {string.Join(", ", ports)}."
+            );
+    }
 
     private static int HealthInput(SizedEngine engine, string name)
     {

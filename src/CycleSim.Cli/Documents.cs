@@ -109,6 +109,7 @@ internal static class Documents
         };
         o["setting"] = LimitOf(p.Setting);
         o["net_thrust_N"] = Number(p.NetThrust);
+        o["installed_thrust_N"] = Number(p.InstalledThrust);
         o["gross_thrust_N"] = Number(p.GrossThrust);
         o["ram_drag_N"] = Number(p.RamDrag);
         o["fuel_flow_kg_per_s"] = Number(p.FuelFlow);
@@ -231,7 +232,7 @@ internal static class Documents
             ["value"] = Number(limit.Value),
             ["unit"] = limit.Quantity switch
             {
-                Quantity.NetThrust => "N",
+                Quantity.NetThrust or Quantity.InstalledThrust => "N",
                 Quantity.FuelFlow => "kg/s",
                 Quantity.P3 => "Pa",
                 Quantity.T3 or Quantity.T4 or Quantity.T41 or Quantity.T45 or Quantity.T5 => "K",

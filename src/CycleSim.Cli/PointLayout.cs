@@ -23,6 +23,12 @@ internal static class PointLayout
                 $"{d.Force(p.NetThrust)} {d.ForceUnit}   (gross {d.Force(p.GrossThrust)}, ram drag {d.Force(p.RamDrag)})"
             ),
             (
+                "installed thrust",
+                p.InstalledThrust == p.NetThrust
+                    ? "equal to net thrust: no nacelle loss here"
+                    : $"{d.Force(p.InstalledThrust)} {d.ForceUnit}   (nacelle drag and scrubbing {d.Force(p.NetThrust - p.InstalledThrust)})"
+            ),
+            (
                 "fuel flow",
                 $"{d.FuelFlow(p.FuelFlow)} {d.FuelFlowUnit}   (fuel-air ratio {Display.Fixed(p.FuelAirRatio, 5)})"
             ),
@@ -195,7 +201,7 @@ internal static class PointLayout
         + " = "
         + setting.Quantity switch
         {
-            Quantity.NetThrust => $"{d.Force(setting.Value)} {d.ForceUnit}",
+            Quantity.NetThrust or Quantity.InstalledThrust => $"{d.Force(setting.Value)} {d.ForceUnit}",
             Quantity.FuelFlow => $"{d.FuelFlow(setting.Value)} {d.FuelFlowUnit}",
             Quantity.T4 or Quantity.T41 or Quantity.T45 or Quantity.T5 or Quantity.T3 =>
                 $"{d.Temperature(setting.Value)} {d.TemperatureUnit}",

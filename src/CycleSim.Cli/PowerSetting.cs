@@ -20,6 +20,12 @@ internal sealed class PowerSetting
     private readonly Choice[] _choices =
     [
         Of("--thrust", "Net thrust, for instance \"100 kN\".", Quantity.NetThrust, Dimension.Force),
+        Of(
+            "--installed-thrust",
+            "Net thrust less nacelle losses, for instance \"98 kN\".",
+            Quantity.InstalledThrust,
+            Dimension.Force
+        ),
         Of("--fuel-flow", "Fuel flow, for instance \"0.8 kg/s\".", Quantity.FuelFlow, Dimension.MassFlow),
         Of("--T4", "Combustor exit temperature, for instance \"1600 K\".", Quantity.T4, Dimension.Temperature),
         Of("--T41", "Rotor inlet temperature, for instance \"1550 K\".", Quantity.T41, Dimension.Temperature),

@@ -32,6 +32,8 @@ internal static class SurgeMarginCommand
             common.Engine,
             rating,
             common.Bleed,
+            common.Open,
+            common.Shut,
             common.Offtake,
             common.Worn,
             common.UnitSystem,

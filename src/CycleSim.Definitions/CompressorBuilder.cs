@@ -73,7 +73,10 @@ internal static class CompressorBuilder
         {
             var stack = new StageStack(stages);
             var efficiency = new DesignEfficiency(stack.Design.Efficiency);
-            return Of(table, stack.Design.PressureRatio, efficiency, StackedMap.Build(stack));
+            return Of(table, stack.Design.PressureRatio, efficiency, StackedMap.Build(stack)) with
+            {
+                StageWork = stack.WorkShares(),
+            };
         }
         catch (ArgumentException error)
         {

@@ -24,6 +24,7 @@ internal sealed class DefinitionBuilder(List<TomlTableNode> nodes, string source
         var bypassDuct = One("bypass_duct");
         var coreDuct = One("core_duct");
         var mixer = One("mixer");
+        var nacelle = One("nacelle");
         var control = One("control");
         var ratings = Many("rating");
 
@@ -39,8 +40,12 @@ internal sealed class DefinitionBuilder(List<TomlTableNode> nodes, string source
         var builtCompressors = compressors.Select(c => CompressorBuilder.Build(c, source, problems)).ToList();
         Names.Check(top, compressors, turbines, spools, air, ratings);
         Spools.Check(fan, compressors, turbines, spools);
-        var ports = air.Select(a => AirPorts.Build(a, compressors, turbines, fan.Present)).ToList();
+        var ports = air.Select(a => AirPorts.Build(a, compressors, builtCompressors, turbines, fan.Present)).ToList();
         AirPorts.CheckFlows(compressors, air);
+        var builtCoreNozzle = NozzleBuilder.Build(coreNozzle, source, problems);
+        var builtBypassNozzle = NozzleBuilder.Build(bypassNozzle, source, problems);
+        if (nacelle.Number("scrubbing_loss", 0.0) > 0.0 && (!fan.Present || mixer.Present))
+            nacelle.Report("scrubbing_loss", "needs a bypass nozzle; this engine has none.");
         if (!fan.Present)
             foreach (var useless in new[] { bypassNozzle, bypassDuct, mixer }.Where(t => t.Present))
                 useless.Report("", "has no fan to serve; drop this table or add [fan].");
@@ -106,8 +111,13 @@ internal sealed class DefinitionBuilder(List<TomlTableNode> nodes, string source
                     PressureLoss = mixer.Number("pressure_loss", 0.0),
                 }
                 : null,
-            CoreNozzle = Nozzle(coreNozzle),
-            BypassNozzle = Nozzle(bypassNozzle),
+            CoreNozzle = builtCoreNozzle,
+            BypassNozzle = builtBypassNozzle,
+            Nacelle = new NacelleDefinition
+            {
+                DragArea = nacelle.Number("drag_area", 0.0),
+                ScrubbingLoss = nacelle.Number("scrubbing_loss", 0.0),
+            },
             BypassDuctLoss = bypassDuct.Number("pressure_loss", 0.0),
             CoreDuctLoss = coreDuct.Number("pressure_loss", 0.0),
             Control = new ControlDefinition
@@ -185,15 +195,8 @@ internal sealed class DefinitionBuilder(List<TomlTableNode> nodes, string source
             HubPressureRatio = fan.Number("hub_pressure_ratio", fan.Number("pressure_ratio")),
             HubEfficiency = hub,
             GearRatio = fan.Number("gear_ratio", 1.0),
+            GearEfficiency = fan.Number("gear_efficiency", 1.0),
             ReynoldsExponent = fan.Number("reynolds_exponent", 0.0),
         };
     }
-
-    private static NozzleDefinition Nozzle(TableReader table) =>
-        new()
-        {
-            Efficiency = table.Number("efficiency", 1.0),
-            VelocityCoefficient = table.Number("velocity_coefficient", 1.0),
-            DischargeCoefficient = table.Number("discharge_coefficient", 1.0),
-        };
 }

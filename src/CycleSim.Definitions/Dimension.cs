@@ -13,6 +13,7 @@ public enum Dimension
     Whole,
     Switch,
     Length,
+    Area,
     Pressure,
     Temperature,
     TemperatureDifference,

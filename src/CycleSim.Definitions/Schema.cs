@@ -338,6 +338,15 @@ internal static class Schema
                     Default: "1",
                     Example: "0.4"
                 ),
+                new(
+                    "gear_efficiency",
+                    Dimension.Share,
+                    "Power that reaches the fan over what the gear takes from the spool.",
+                    0.9,
+                    1,
+                    Default: "1",
+                    Example: "0.993"
+                ),
             ]
         ),
         new(
@@ -610,7 +619,13 @@ internal static class Schema
                     Required: true,
                     Example: "\"customer-bleed\""
                 ),
-                new("from", Dimension.Text, "Compressor that it comes from.", Required: true, Example: "\"hpc\""),
+                new(
+                    "from",
+                    Dimension.Text,
+                    "Compressor that it comes from, or \"fan\": the bypass stream behind the fan.",
+                    Required: true,
+                    Example: "\"hpc\""
+                ),
                 new(
                     "work_fraction",
                     Dimension.Share,
@@ -619,6 +634,14 @@ internal static class Schema
                     1,
                     Default: "1",
                     Example: "0.6"
+                ),
+                new(
+                    "stage",
+                    Dimension.Whole,
+                    "Stage behind which it leaves, in place of work_fraction, where [[compressor.stage]] tables give the stages.",
+                    1,
+                    40,
+                    Example: "5"
                 ),
                 new(
                     "to",
@@ -630,7 +653,7 @@ internal static class Schema
                 new(
                     "fraction",
                     Dimension.Share,
-                    "Share of the compressor's inlet flow.",
+                    "Share of the compressor's inlet flow; from the fan, of the bypass flow.",
                     0,
                     1,
                     MostAllowed: false,
@@ -661,6 +684,13 @@ internal static class Schema
                     2,
                     LeastAllowed: false,
                     Example: "0.92"
+                ),
+                new(
+                    "normally",
+                    Dimension.Text,
+                    "Whether the port takes its air unless told otherwise; anti-ice and precooler air is normally shut.",
+                    Choices: ["open", "shut"],
+                    Default: "open"
                 ),
             ]
         ),
@@ -701,8 +731,35 @@ internal static class Schema
                 ),
             ]
         ),
-        Nozzle("core_nozzle", "Convergent nozzle of the core stream, or of the mixed one."),
-        Nozzle("bypass_nozzle", "Convergent nozzle of the bypass stream."),
+        Nozzle("core_nozzle", "Nozzle of the core stream, or of the mixed one."),
+        Coefficients("core_nozzle"),
+        Nozzle("bypass_nozzle", "Nozzle of the bypass stream."),
+        Coefficients("bypass_nozzle"),
+        new(
+            "nacelle",
+            false,
+            "What the nacelle takes: installed thrust is net thrust less this.",
+            [
+                new(
+                    "drag_area",
+                    Dimension.Area,
+                    "External drag over the dynamic pressure.",
+                    0,
+                    50,
+                    Default: "0 m2",
+                    Example: "\"0.4 m2\""
+                ),
+                new(
+                    "scrubbing_loss",
+                    Dimension.Share,
+                    "Share of the bypass nozzle's gross thrust lost on the cowl and pylon behind it; needs a bypass nozzle.",
+                    0,
+                    0.2,
+                    Default: "0",
+                    Example: "\"0.5 %\""
+                ),
+            ]
+        ),
         new(
             "control",
             false,
@@ -821,11 +878,20 @@ internal static class Schema
                 new(
                     "efficiency",
                     Dimension.Share,
-                    "Isentropic efficiency up to the exit plane.",
+                    "Isentropic efficiency up to the exit plane of a convergent nozzle.",
                     0.5,
                     1,
                     Default: "1",
                     Example: "0.95"
+                ),
+                new(
+                    "exit_area_ratio",
+                    Dimension.Number,
+                    "Exit over throat area of a convergent-divergent nozzle; 1 is convergent.",
+                    1,
+                    4,
+                    Default: "1",
+                    Example: "1.08"
                 ),
                 new(
                     "velocity_coefficient",
@@ -845,6 +911,26 @@ internal static class Schema
                     Default: "1",
                     Example: "0.98"
                 ),
+            ]
+        );
+
+    private static TableSpec Coefficients(string nozzle) =>
+        new(
+            nozzle + ".coefficients",
+            true,
+            "The nozzle's coefficients at one pressure ratio, in rising order, in place of the constants; between them a smooth curve, outside them the last value.",
+            [
+                new(
+                    "pressure_ratio",
+                    Dimension.Number,
+                    "Total over ambient pressure.",
+                    1,
+                    50,
+                    Required: true,
+                    Example: "1.6"
+                ),
+                new("velocity", Dimension.Share, "Velocity coefficient there.", 0.5, 1, Example: "0.99"),
+                new("discharge", Dimension.Share, "Discharge coefficient there.", 0.5, 1, Example: "0.97"),
             ]
         );
 }

@@ -23,6 +23,13 @@ internal static class UnitTable
             new(["km"], v => new Length(v, LengthUnit.Kilometer).Meters),
             new(["ft"], v => new Length(v, LengthUnit.Foot).Meters),
         ],
+        [Dimension.Area] =
+        [
+            Inside("m2"),
+            new(["cm2"], v => new Area(v, AreaUnit.SquareCentimeter).SquareMeters),
+            new(["ft2"], v => new Area(v, AreaUnit.SquareFoot).SquareMeters),
+            new(["in2"], v => new Area(v, AreaUnit.SquareInch).SquareMeters),
+        ],
         [Dimension.Pressure] =
         [
             Inside("Pa"),

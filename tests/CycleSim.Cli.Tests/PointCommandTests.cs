@@ -227,4 +227,31 @@ public class PointCommandTests
         Assert.Equal(3, run.ExitCode);
         Assert.Contains("no such file", run.Error);
     }
+
+    [Fact]
+    public void Anti_ice_air_is_shut_until_it_is_opened()
+    {
+        string[] point = ["point", "torvik-75", "--altitude", "0 m", "--mach", "0", "--T41", "1500 K", "--json"];
+        double Taken(CommandLine run) =>
+            run
+                .Json.GetProperty("air")
+                .EnumerateArray()
+                .Single(a => a.GetProperty("name").GetString() == "nacelle-anti-ice")
+                .GetProperty("mass_flow_kg_per_s")
+                .GetDouble();
+        var shut = CommandLine.Run(point);
+        var open = CommandLine.Run([.. point, "--open", "nacelle-anti-ice"]);
+        Assert.Equal(0.0, Taken(shut));
+        Assert.Equal(0.9, Taken(open));
+        Assert.True(open.Number("net_thrust_N") < shut.Number("net_thrust_N"));
+        // Static: no nacelle drag, but the jet still scrubs.
+        Assert.True(shut.Number("installed_thrust_N") < shut.Number("net_thrust_N"));
+
+        var both = CommandLine.Run([.. point, "--open", "wing-anti-ice", "--shut", "wing-anti-ice"]);
+        Assert.Equal(2, both.ExitCode);
+        Assert.Contains("use one of them", both.Error);
+        var unknown = CommandLine.Run([.. point, "--open", "cowl"]);
+        Assert.Equal(2, unknown.ExitCode);
+        Assert.Contains("nacelle-anti-ice", unknown.Error);
+    }
 }

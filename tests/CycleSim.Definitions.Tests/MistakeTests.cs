@@ -46,6 +46,50 @@ public class MistakeTests
                 "is given twice"
             },
             { "[[rating.limit]]", "[rating.limit]", "[rating.limit]", "rating.limit", "[[rating.limit]]" },
+            // Ports and nozzles.
+            {
+                "work_fraction = 0.6\nto = \"overboard\"\nfraction = \"0 %\"",
+                "stage = 4\nto = \"overboard\"\nfraction = \"0 %\"",
+                "stage = 4",
+                "air[4].stage",
+                "needs the stages of 'hpc'"
+            },
+            { "normally = \"shut\"", "normally = \"closed\"", "normally = \"closed\"", "air[6].normally", "\"shut\"" },
+            {
+                "from = \"hpc\"\nwork_fraction = 0.5\nto = \"overboard\"\nflow",
+                "from = \"fan\"\nwork_fraction = 0.5\nto = \"overboard\"\nflow",
+                "work_fraction = 0.5",
+                "air[6].work_fraction",
+                "is for a core compressor"
+            },
+            {
+                "[core_nozzle]\nvelocity_coefficient = 0.995",
+                "[core_nozzle]\nefficiency = 0.95\nexit_area_ratio = 1.2",
+                "efficiency = 0.95",
+                "core_nozzle.efficiency",
+                "convergent-divergent"
+            },
+            {
+                "[bypass_nozzle]\nvelocity_coefficient = 0.995",
+                "[bypass_nozzle]\n[[bypass_nozzle.coefficients]]\npressure_ratio = 1.2\nvelocity = 0.99\ndischarge = 0.95\n[[bypass_nozzle.coefficients]]\npressure_ratio = 1.8\nvelocity = 0.99",
+                "[[bypass_nozzle.coefficients]]",
+                "bypass_nozzle.coefficients[2].discharge",
+                "the other points of this nozzle give it"
+            },
+            {
+                "[bypass_nozzle]\nvelocity_coefficient = 0.995",
+                "[bypass_nozzle]\n[[bypass_nozzle.coefficients]]\npressure_ratio = 1.8\nvelocity = 0.99\n[[bypass_nozzle.coefficients]]\npressure_ratio = 1.2\nvelocity = 0.98",
+                "velocity = 0.99",
+                "bypass_nozzle.coefficients[1].velocity",
+                "must rise"
+            },
+            {
+                "[core_duct]",
+                "[nacelle]\ndrag_area = \"0.4 m\"\n[core_duct]",
+                "drag_area = \"0.4 m\"",
+                "nacelle.drag_area",
+                "is a length"
+            },
             // Alternatives.
             {
                 "mach = 0.80",

@@ -52,11 +52,34 @@ public class StackedCompressorTests
             Assert.Throws<DefinitionException>(() => Parse("polytropic_efficiency = 0.9\n")).Message
         );
 
-    private static LoadedDefinition Parse(string compressor)
+    // Seven stages of equal work: behind the third, three sevenths of it are done.
+    [Fact]
+    public void A_port_may_name_the_stage_behind_which_it_takes_its_air()
+    {
+        var engine = Parse(Stages(7), "stage = 3").Engine;
+        var port = engine.AirPorts.Single(p => p.Name == "customer-bleed");
+        Assert.Equal(3.0 / 7.0, port.WorkFraction, 1e-12);
+        Assert.Equal(1.0, engine.Compressors[1].StageWork[^1], 1e-12);
+    }
+
+    [Theory]
+    [InlineData("stage = 8", "8 does not exist; 'hpc' has 7 stages")]
+    [InlineData("stage = 2.5", "whole number")]
+    [InlineData("stage = 3\nwork_fraction = 0.4", "is given beside work_fraction")]
+    public void A_stage_that_is_not_there_is_refused(string key, string message)
+    {
+        var problem = Assert.Single(Assert.Throws<DefinitionException>(() => Parse(Stages(7), key)).Problems);
+        Assert.Equal("air[4].stage", problem.Key);
+        Assert.Contains(message, problem.Message);
+    }
+
+    private static LoadedDefinition Parse(string compressor, string customerBleed = "work_fraction = 0.6")
     {
         var text = EngineLibrary.Text("velda-27").ReplaceLineEndings("\n");
         Assert.Contains(Compressor, text);
-        return DefinitionFile.Parse(text.Replace(Compressor, compressor), "stacked");
+        Assert.Contains("work_fraction = 0.6", text);
+        text = text.Replace(Compressor, compressor).Replace("work_fraction = 0.6", customerBleed);
+        return DefinitionFile.Parse(text, "stacked");
     }
 
     private static string Stages(int count) =>

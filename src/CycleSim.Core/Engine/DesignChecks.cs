@@ -79,6 +79,13 @@ internal static class DesignChecks
 
     public static void CheckNozzles(EngineDefinition definition, FlowPath<Plain> path)
     {
+        foreach (var nozzle in new[] { definition.CoreNozzle, definition.BypassNozzle })
+            if (nozzle.ExitAreaRatio > 1.0 && nozzle.Efficiency < 1.0)
+                throw new SizingException(
+                    $"{definition.Name}: a nozzle has exit_area_ratio = {nozzle.ExitAreaRatio:F3} and efficiency = "
+                        + $"{nozzle.Efficiency:F3}; a convergent-divergent nozzle takes its losses in the velocity and "
+                        + "discharge coefficients. Drop the efficiency."
+                );
         var ambient = path.Inputs[InputLayout.Pressure].Value;
         if (definition.Mixer is not null)
         {

@@ -1,4 +1,5 @@
 using CycleSim.Air;
+using CycleSim.Components;
 using CycleSim.Gas;
 using CycleSim.Maps;
 
@@ -47,6 +48,8 @@ public sealed record EngineDefinition
     public double BypassDuctLoss { get; init; }
 
     public double CoreDuctLoss { get; init; }
+
+    public NacelleDefinition Nacelle { get; init; } = new();
 
     public ControlDefinition Control { get; init; } = new();
 
@@ -105,6 +108,9 @@ public sealed record FanDefinition
 
     /// <summary>Fan turns of its spool, below 1 behind a reduction gear.</summary>
     public double GearRatio { get; init; } = 1.0;
+
+    /// <summary>Power that reaches the fan over what the gear takes from the spool.</summary>
+    public double GearEfficiency { get; init; } = 1.0;
 }
 
 public sealed record CompressorDefinition
@@ -119,6 +125,9 @@ public sealed record CompressorDefinition
 
     /// <summary>Its map where its stages or a table are known; the general shape without it.</summary>
     public PlacedMap? Map { get; init; }
+
+    /// <summary>Share of the enthalpy rise done behind each stage at the design point; empty where the stages are not known.</summary>
+    public IReadOnlyList<double> StageWork { get; init; } = [];
 
     /// <summary>Total-pressure loss of the duct ahead, at the design point.</summary>
     public double InletDuctLoss { get; init; }
@@ -196,9 +205,13 @@ public sealed record AirPort
 {
     public required string Name { get; init; }
 
+    /// <summary>Name of <see cref="From"/> for air taken from the bypass stream behind the fan.</summary>
+    public const string Fan = "fan";
+
+    /// <summary>The core compressor it comes from, or <see cref="Fan"/>.</summary>
     public required string From { get; init; }
 
-    /// <summary>Share of the compressor's enthalpy rise done on the air before it leaves, 0 to 1.</summary>
+    /// <summary>Share of the compressor's enthalpy rise done on the air before it leaves, 0 to 1; 1 behind the fan.</summary>
     public double WorkFraction { get; init; } = 1.0;
 
     public required AirDestination To { get; init; }
@@ -206,7 +219,7 @@ public sealed record AirPort
     /// <summary>The turbine for <see cref="AirDestination.Vane"/> and <see cref="AirDestination.Rotor"/>.</summary>
     public string? Turbine { get; init; }
 
-    /// <summary>Flow as a share of the compressor's inlet flow.</summary>
+    /// <summary>Flow as a share of the compressor's inlet flow; behind the fan, of the bypass flow.</summary>
     public double Fraction { get; init; }
 
     /// <summary>Flow in kg/s, added to the share.</summary>
@@ -216,6 +229,9 @@ public sealed record AirPort
     public double OpenBelow { get; init; }
 
     public double ShutAbove { get; init; }
+
+    /// <summary>Shut unless opened for a point, as anti-ice air is; <see cref="InputLayout.Open"/> opens it.</summary>
+    public bool NormallyShut { get; init; }
 
     public bool Scheduled => ShutAbove > 0.0;
 }
@@ -235,14 +251,32 @@ public sealed record MixerDefinition
 
 public sealed record NozzleDefinition
 {
-    /// <summary>Isentropic efficiency up to the exit plane.</summary>
+    /// <summary>Isentropic efficiency up to the exit plane; 1 in a convergent-divergent nozzle, whose losses are its coefficients.</summary>
     public double Efficiency { get; init; } = 1.0;
+
+    /// <summary>Exit over throat area; 1 for a convergent nozzle.</summary>
+    public double ExitAreaRatio { get; init; } = 1.0;
 
     /// <summary>Real jet momentum over that of the exit-plane speed.</summary>
     public double VelocityCoefficient { get; init; } = 1.0;
 
     /// <summary>Effective over geometric throat area.</summary>
     public double DischargeCoefficient { get; init; } = 1.0;
+
+    /// <summary>The coefficients over the nozzle's pressure ratio, in place of the constants.</summary>
+    public CoefficientCurve? VelocityCurve { get; init; }
+
+    public CoefficientCurve? DischargeCurve { get; init; }
+}
+
+/// <summary>What the nacelle takes from the thrust; it makes installed thrust of net thrust.</summary>
+public sealed record NacelleDefinition
+{
+    /// <summary>External drag over the dynamic pressure, m2.</summary>
+    public double DragArea { get; init; }
+
+    /// <summary>Share of the bypass nozzle's gross thrust that the jet loses on the cowl and pylon behind it.</summary>
+    public double ScrubbingLoss { get; init; }
 }
 
 /// <summary>What the thrust lever commands: corrected low-pressure speed between idle and full.</summary>

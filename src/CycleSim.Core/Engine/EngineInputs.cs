@@ -97,12 +97,26 @@ public sealed class InputLayout
             inputs[PowerOfftake(k)] = definition.Spools[k].PowerOfftake;
         for (var k = 0; k < _ports; k++)
         {
-            inputs[PortFraction(k)] = definition.AirPorts[k].Fraction;
-            inputs[PortFlow(k)] = definition.AirPorts[k].Flow;
+            if (!definition.AirPorts[k].NormallyShut)
+                Open(definition, inputs, k);
         }
 
         Array.Fill(inputs, 1.0, CompressorEfficiency(0), 2 * _compressors + 2 * _turbines + 2);
         return inputs;
+    }
+
+    /// <summary>Opens a port to the share and flow of its definition.</summary>
+    public void Open(EngineDefinition definition, Span<double> inputs, int port)
+    {
+        inputs[PortFraction(port)] = definition.AirPorts[port].Fraction;
+        inputs[PortFlow(port)] = definition.AirPorts[port].Flow;
+    }
+
+    /// <summary>Shuts a port.</summary>
+    public void Shut(Span<double> inputs, int port)
+    {
+        inputs[PortFraction(port)] = 0.0;
+        inputs[PortFlow(port)] = 0.0;
     }
 
     /// <summary>Puts a flight condition into a list of inputs.</summary>

@@ -104,6 +104,7 @@ public sealed class FlowPath<T>
 
     /// <summary>Performance: N, kg/s, m/s.</summary>
     public T NetThrust,
+        InstalledThrust,
         GrossThrustCore,
         GrossThrustBypass,
         RamDrag,
@@ -123,7 +124,7 @@ public sealed class FlowPath<T>
             FanHub = FanFace;
         for (var k = 0; k < _engine.Compressors.Length; k++)
             RunCompressor(gas, k);
-        ReturnToBypass(gas);
+        RunBypassDuct(gas);
         Burn(gas);
         for (var k = 0; k < _engine.Turbines.Length; k++)
             RunTurbine(gas, k);
@@ -140,6 +141,8 @@ public sealed class FlowPath<T>
         {
             case Quantity.NetThrust:
                 return NetThrust;
+            case Quantity.InstalledThrust:
+                return InstalledThrust;
             case Quantity.FuelFlow:
                 return FuelFlow;
             case Quantity.T4:
@@ -237,7 +240,7 @@ public sealed class FlowPath<T>
         {
             if (_engine.Ports[i].Compressor != k)
                 continue;
-            TakeAir(gas, i, k, inlet, outlet);
+            TakeAir(i, k, inlet, outlet);
             power -= _portFlow[i] * (outlet.H - _portEnthalpy[i]);
             outlet.W -= _portFlow[i];
         }
@@ -248,10 +251,11 @@ public sealed class FlowPath<T>
     private void LoadFanSpool()
     {
         FanTip.W = FanFace.W - FanHub.W;
-        _spoolPower[_engine.Fan!.Spool] += FanTip.W * (FanTip.H - FanFace.H) + FanHub.W * (FanHub.H - FanFace.H);
+        var power = FanTip.W * (FanTip.H - FanFace.H) + FanHub.W * (FanHub.H - FanFace.H);
+        _spoolPower[_engine.Fan!.Spool] += power / _engine.Definition.Fan!.GearEfficiency;
     }
 
-    private void TakeAir(in GasRelations<T> gas, int i, int k, in FlowState<T> inlet, in FlowState<T> outlet)
+    private void TakeAir(int i, int k, in FlowState<T> inlet, in FlowState<T> outlet)
     {
         var port = _engine.Ports[i].Port;
         var flow = inlet.W * Inputs[_engine.Layout.PortFraction(i)];
@@ -275,11 +279,18 @@ public sealed class FlowPath<T>
             : T.Chain(u * u * (3.0 - 2.0 * u), speed, -6.0 * u * (1.0 - u) / (shutAbove - openBelow));
     }
 
-    private void ReturnToBypass(in GasRelations<T> gas)
+    private void RunBypassDuct(in GasRelations<T> gas)
     {
         if (!_engine.HasFan)
             return;
         BypassExit = FanTip;
+        for (var i = 0; i < _engine.Ports.Length; i++)
+            if (_engine.Ports[i].FromFan)
+            {
+                TakeAir(i, -1, FanTip, FanTip);
+                BypassExit.W -= _portFlow[i];
+            }
+
         for (var i = 0; i < _engine.Ports.Length; i++)
             if (_engine.Ports[i].Port.To == AirDestination.BypassDuct)
                 Duct.Mix(gas, ref BypassExit, _portFlow[i], _portEnthalpy[i]);
@@ -420,9 +431,22 @@ public sealed class FlowPath<T>
         }
 
         NetThrust = GrossThrustCore + GrossThrustBypass - RamDrag;
+        Install(gas, ambient);
     }
 
-    /// <summary>Expands a stream through its nozzle: gross thrust, and the throat area that the flow needs.</summary>
+    private void Install(in GasRelations<T> gas, in T ambient)
+    {
+        InstalledThrust = NetThrust;
+        var nacelle = _engine.Definition.Nacelle;
+        if (nacelle.ScrubbingLoss > 0.0)
+            InstalledThrust -= GrossThrustBypass * nacelle.ScrubbingLoss;
+        if (nacelle.DragArea <= 0.0)
+            return;
+        var density = ambient / (gas.GasConstant(FreeStream.Y) * Inputs[InputLayout.Temperature]);
+        InstalledThrust -= density * Airspeed * Airspeed * (0.5 * nacelle.DragArea);
+    }
+
+    /// <summary>Expands a stream through its nozzle: gross thrust, and the geometric throat area that the flow needs.</summary>
     private static T Leave(
         in GasRelations<T> gas,
         in FlowState<T> stream,
@@ -432,9 +456,12 @@ public sealed class FlowPath<T>
         out T area
     )
     {
-        Nozzle.Expand(gas, stream, ambient, nozzle.Efficiency, out jet);
-        area = stream.W / jet.Flux;
-        return Nozzle.GrossThrust(jet, stream.W, ambient, nozzle.VelocityCoefficient);
+        Nozzle.Expand(gas, stream, ambient, nozzle.Efficiency, nozzle.ExitAreaRatio, out jet);
+        var pressureRatio = stream.P / ambient;
+        var discharge = nozzle.DischargeCurve is { } c ? c.At(pressureRatio) : T.Constant(nozzle.DischargeCoefficient);
+        var velocity = nozzle.VelocityCurve is { } v ? v.At(pressureRatio) : T.Constant(nozzle.VelocityCoefficient);
+        area = stream.W / (jet.Flux * discharge);
+        return Nozzle.GrossThrust(jet, stream.W, ambient, velocity);
     }
 
     /// <summary>

@@ -6,6 +6,9 @@ public enum Quantity
     /// <summary>Net thrust, N.</summary>
     NetThrust,
 
+    /// <summary>Net thrust less what the nacelle takes, N.</summary>
+    InstalledThrust,
+
     /// <summary>Fuel flow, kg/s.</summary>
     FuelFlow,
 

@@ -8,7 +8,10 @@ public static class QuantityText
     public static string Format(Quantity quantity, double value) =>
         quantity switch
         {
-            Quantity.NetThrust => string.Create(CultureInfo.InvariantCulture, $"{value / 1000.0:F2} kN"),
+            Quantity.NetThrust or Quantity.InstalledThrust => string.Create(
+                CultureInfo.InvariantCulture,
+                $"{value / 1000.0:F2} kN"
+            ),
             Quantity.FuelFlow => string.Create(CultureInfo.InvariantCulture, $"{value:F4} kg/s"),
             Quantity.T4 or Quantity.T41 or Quantity.T45 or Quantity.T5 or Quantity.T3 => string.Create(
                 CultureInfo.InvariantCulture,
@@ -24,6 +27,7 @@ public static class QuantityText
         quantity switch
         {
             Quantity.NetThrust => "net thrust",
+            Quantity.InstalledThrust => "installed thrust",
             Quantity.FuelFlow => "fuel flow",
             Quantity.Epr => "EPR",
             Quantity.CorrectedN1 => "corrected N1",

@@ -53,7 +53,7 @@ public sealed class SizedEngine
     /// <summary>Spool speeds, one map position for each compressor, combustor exit temperature.</summary>
     public int UnknownCount { get; }
 
-    /// <summary>Effective throat areas, m2.</summary>
+    /// <summary>Geometric throat areas, m2.</summary>
     public double CoreNozzleArea { get; internal set; }
 
     public double BypassNozzleArea { get; internal set; }
@@ -168,7 +168,10 @@ public sealed class SizedPort
 
     public AirPort Port { get; }
 
+    /// <summary>Index of the core compressor, -1 for the fan.</summary>
     public int Compressor { get; }
+
+    public bool FromFan => Port.From == AirPort.Fan;
 
     public int Turbine { get; }
 }

@@ -191,6 +191,18 @@ public sealed class StageStack
 
     public int StageCount => _stages.Length;
 
+    /// <summary>Share of the whole enthalpy rise that is done behind each stage at design, the last 1.</summary>
+    public IReadOnlyList<double> WorkShares()
+    {
+        var shares = new double[_stages.Length];
+        var sum = 0.0;
+        for (var i = 0; i < _stages.Length; i++)
+            shares[i] = sum += _stages[i].WorkCoefficient * _stages[i].BladeSpeed * _stages[i].BladeSpeed;
+        for (var i = 0; i < shares.Length; i++)
+            shares[i] /= sum;
+        return shares;
+    }
+
     /// <summary>
     /// The stack at a relative corrected speed and inlet corrected flow (1 at design); null where a stage chokes or no longer
     /// compresses.

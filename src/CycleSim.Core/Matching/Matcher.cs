@@ -479,7 +479,7 @@ public sealed class Matcher
         var last = Engine.Definition.Mixer is null ? _plain.Path.CoreExit.P.Value : _plain.Path.Mixed.P.Value;
         if (!(last > ambient) || !(_plain.Path.CombustorInlet.W.Value > 0.0))
             return outcome with { Status = MatchStatus.NoThroughflow, Culprit = 0 };
-        if (Engine.HasFan && (!(_plain.Path.BypassExit.P.Value > ambient) || !(_plain.Path.FanTip.W.Value > 0.0)))
+        if (Engine.HasFan && (!(_plain.Path.BypassExit.P.Value > ambient) || !(_plain.Path.BypassExit.W.Value > 0.0)))
             return outcome with { Status = MatchStatus.NoThroughflow, Culprit = 1 };
         var far = _plain.Path.FuelFlow.Value / _plain.Path.CombustorInlet.W.Value;
         return far > 0.0 && far < Engine.Definition.Gas.StoichiometricFuelAirRatio

@@ -90,6 +90,7 @@ public sealed class Influence
         var list = new List<(string, Func<FlowPath<Dual>, Dual>)>
         {
             ("net_thrust_N", p => p.NetThrust),
+            ("installed_thrust_N", p => p.InstalledThrust),
             ("fuel_flow_kg_per_s", p => p.FuelFlow),
             ("sfc_kg_per_N_s", p => p.FuelFlow / p.NetThrust),
             ("T3_K", p => p.Output(Quantity.T3)),

@@ -20,6 +20,9 @@ public sealed record OperatingPoint
     /// <summary>Net thrust, N: gross thrusts less ram drag, no nacelle or installation drag.</summary>
     public required double NetThrust { get; init; }
 
+    /// <summary>Net thrust less nacelle drag and scrubbing, N: the net thrust where the definition gives no [nacelle].</summary>
+    public required double InstalledThrust { get; init; }
+
     public required double GrossThrust { get; init; }
 
     public required double RamDrag { get; init; }
@@ -93,6 +96,7 @@ public sealed record OperatingPoint
         quantity switch
         {
             Quantity.NetThrust => NetThrust,
+            Quantity.InstalledThrust => InstalledThrust,
             Quantity.FuelFlow => FuelFlow,
             Quantity.T3 => Station("3").TotalTemperature,
             Quantity.P3 => Station("3").TotalPressure,

@@ -24,11 +24,17 @@ internal static class PointAudit
         }
 
         var spoolPower = new double[engine.Spools.Length];
+        var gearLoss = 0.0;
         if (engine.Fan is { } f)
-            spoolPower[f.Spool] +=
+        {
+            var atFan =
                 p.FanTip.W.Value * p.FanTip.H.Value
                 + p.FanHub.W.Value * p.FanHub.H.Value
                 - p.FanFace.W.Value * p.FanFace.H.Value;
+            spoolPower[f.Spool] += atFan / engine.Definition.Fan!.GearEfficiency;
+            gearLoss = spoolPower[f.Spool] - atFan;
+        }
+
         for (var k = 0; k < engine.Compressors.Length; k++)
         {
             var upstream =
@@ -57,6 +63,8 @@ internal static class PointAudit
             var power = (spoolPower[turbine.Spool] + offtake) / spool.MechanicalEfficiency;
             lines.Add(Through(turbine.Definition.Name, gas, entering, [p.TurbineOutlet[k]], -power));
             whole.Power(-offtake - power * (1.0 - spool.MechanicalEfficiency));
+            if (engine.Fan?.Spool == turbine.Spool)
+                whole.Power(-gearLoss);
         }
 
         var mixes = engine.Definition.Mixer is not null;
@@ -68,7 +76,11 @@ internal static class PointAudit
             for (var i = 0; i < engine.Ports.Length; i++)
                 if (engine.Ports[i].Port.To == AirDestination.BypassDuct)
                     entering.Add(PortState(engine, p, gas, i));
-            lines.Add(Through("bypass duct", gas, entering, [p.BypassExit], 0.0));
+            List<FlowState<Plain>> leaving = [p.BypassExit];
+            for (var i = 0; i < engine.Ports.Length; i++)
+                if (engine.Ports[i].FromFan)
+                    leaving.Add(PortState(engine, p, gas, i));
+            lines.Add(Through("bypass duct", gas, entering, leaving, 0.0));
             if (mixes)
                 lines.Add(Through("mixer", gas, [p.CoreExit, p.BypassExit], [p.Mixed], 0.0));
             else
@@ -129,9 +141,12 @@ internal static class PointAudit
     private static void Leave(Balance whole, in GasRelations<Plain> gas, in FlowState<Plain> s) =>
         whole.Out(s.W.Value, s.H.Value, Entropy(gas, s));
 
-    private static FlowState<Plain> PortState(SizedEngine engine, FlowPath<Plain> p, in GasRelations<Plain> gas, int i)
+    /// <summary>The air of a port as it leaves.</summary>
+    public static FlowState<Plain> PortState(SizedEngine engine, FlowPath<Plain> p, in GasRelations<Plain> gas, int i)
     {
         var port = engine.Ports[i];
+        if (port.FromFan)
+            return p.FanTip with { W = p.PortFlow[i] };
         Components.Compressor.AtPort(
             gas,
             p.CompressorInlet[port.Compressor],

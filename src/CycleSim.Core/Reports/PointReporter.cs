@@ -40,6 +40,7 @@ public sealed class PointReporter
             Flight = flight,
             Setting = setting,
             NetThrust = p.NetThrust.Value,
+            InstalledThrust = p.InstalledThrust.Value,
             GrossThrust = p.GrossThrustCore.Value + p.GrossThrustBypass.Value,
             RamDrag = p.RamDrag.Value,
             FuelFlow = p.FuelFlow.Value,
@@ -271,8 +272,8 @@ public sealed class PointReporter
                 jet.Speed.Value,
                 jet.ExitTemperature.Value,
                 jet.ExitPressure.Value,
+                area * (nozzle.DischargeCurve?.At(new Plain(total / ambient)).Value ?? nozzle.DischargeCoefficient),
                 area,
-                area / nozzle.DischargeCoefficient,
                 thrust
             );
     }
@@ -283,13 +284,7 @@ public sealed class PointReporter
         for (var i = 0; i < _engine.Ports.Length; i++)
         {
             var port = _engine.Ports[i];
-            Components.Compressor.AtPort(
-                gas,
-                _path.CompressorInlet[port.Compressor],
-                _path.CompressorDelivery[port.Compressor],
-                port.Port.WorkFraction,
-                out var state
-            );
+            var state = PointAudit.PortState(_engine, _path, gas, i);
             var to = port.Port.To switch
             {
                 AirDestination.Overboard => "overboard",
@@ -298,14 +293,7 @@ public sealed class PointReporter
                 _ => port.Port.Turbine + " rotor",
             };
             list.Add(
-                new StreamReport(
-                    port.Port.Name,
-                    port.Port.From,
-                    to,
-                    _path.PortFlow[i].Value,
-                    state.Tt.Value,
-                    state.P.Value
-                )
+                new StreamReport(port.Port.Name, port.Port.From, to, state.W.Value, state.Tt.Value, state.P.Value)
             );
         }
 

@@ -1,4 +1,5 @@
 using CycleSim.Air;
+using CycleSim.Components;
 using CycleSim.Engine;
 using CycleSim.Matching;
 using CycleSim.Reports;
@@ -45,26 +46,99 @@ public class FlowPathTests
         Assert.Equal(9, point.Audit.Components.Count);
     }
 
+    // Everything at once that the plain twin-spool leaves out: gear loss, fan air, convergent-divergent nozzle, coefficients
+    // over pressure ratio, nacelle.
+    private static readonly SizedEngine Laden = Sizing.Size(
+        TestEngines.TwinSpool() with
+        {
+            Fan = TestEngines.TwinSpool().Fan! with { GearRatio = 0.4, GearEfficiency = 0.99 },
+            AirPorts =
+            [
+                .. TestEngines.TwinSpool().AirPorts,
+                new AirPort
+                {
+                    Name = "precooler",
+                    From = AirPort.Fan,
+                    To = AirDestination.Overboard,
+                    Fraction = 0.02,
+                },
+            ],
+            CoreNozzle = new NozzleDefinition { ExitAreaRatio = 1.15, VelocityCoefficient = 0.99 },
+            BypassNozzle = new NozzleDefinition
+            {
+                VelocityCurve = new CoefficientCurve([1.2, 1.8, 2.6], [0.985, 0.992, 0.994]),
+                DischargeCurve = new CoefficientCurve([1.2, 1.8, 2.6], [0.95, 0.975, 0.985]),
+            },
+            Nacelle = new NacelleDefinition { DragArea = 0.1, ScrubbingLoss = 0.004 },
+        }
+    );
+
     [Theory]
     [MemberData(nameof(Points))]
-    public void Jacobian_is_that_of_central_differences(double h, double mach, double isa, double t4)
+    public void An_engine_with_every_loss_and_port_balances_too(double h, double mach, double isa, double t4)
     {
-        var matcher = new Matcher(Twin);
+        var flight = FlightCondition.AtIsaOffset(h, mach, isa);
+        var point = new EngineModel(Laden).At(flight, Quantity.T4, t4);
+        Assert.InRange(point.Outcome.Residual, 0.0, 1e-10);
+        Assert.InRange(point.Audit.LargestImbalance, 0.0, 1e-9);
+        var precooler = point.Air.Single(a => a.Name == "precooler");
+        Assert.Equal(0.02 * point.Station("13").MassFlow, precooler.MassFlow, 1e-9);
+        Assert.Equal(point.Station("13").TotalTemperature, precooler.TotalTemperature, 1e-9);
+
+        // Dynamic pressure from the atmosphere's density; scrubbing on what the bypass nozzle gives.
+        var density = flight.StaticPressure / (287.05287 * flight.StaticTemperature);
+        var drag = 0.5 * density * point.Airspeed * point.Airspeed * 0.1;
+        var scrubbing = 0.004 * point.Nozzles.Single(n => n.Name == "bypass").GrossThrust;
+        Assert.Equal(point.NetThrust - drag - scrubbing, point.InstalledThrust, 2e-5 * point.NetThrust);
+    }
+
+    [Fact]
+    public void The_gear_takes_its_share_of_the_fan_power_from_the_turbine()
+    {
+        var geared = TestEngines.TwinSpool() with { Fan = TestEngines.TwinSpool().Fan! with { GearEfficiency = 0.98 } };
+        double Turbine(EngineDefinition definition, out double fan)
+        {
+            var point = new EngineModel(definition).DesignPoint();
+            fan = point.Compressors[0].Power;
+            return point.Turbines[1].Power * 0.995;
+        }
+
+        var plain = Turbine(TestEngines.TwinSpool(), out var power);
+        Assert.Equal(power * (1.0 / 0.98 - 1.0), Turbine(geared, out _) - plain, 1e-6 * power);
+    }
+
+    [Theory]
+    [MemberData(nameof(Points))]
+    public void Jacobian_with_every_loss_and_port_is_that_of_central_differences(
+        double h,
+        double mach,
+        double isa,
+        double t4
+    ) => JacobianIsExact(Laden, h, mach, isa, t4);
+
+    [Theory]
+    [MemberData(nameof(Points))]
+    public void Jacobian_is_that_of_central_differences(double h, double mach, double isa, double t4) =>
+        JacobianIsExact(Twin, h, mach, isa, t4);
+
+    private static void JacobianIsExact(SizedEngine engine, double h, double mach, double isa, double t4)
+    {
+        var matcher = new Matcher(engine);
         InputLayout.SetFlight(matcher.Inputs, FlightCondition.AtIsaOffset(h, mach, isa));
         Assert.True(matcher.Solve(MatchingProblem.For(Quantity.T4, t4)).Solved);
-        var plain = new FlowPath<Plain>(Twin);
+        var plain = new FlowPath<Plain>(engine);
         for (var i = 0; i < matcher.Inputs.Length; i++)
             plain.Inputs[i] = new Plain(matcher.Inputs[i]);
         Plain[] At(int unknown, double step)
         {
-            for (var i = 0; i < Twin.UnknownCount; i++)
+            for (var i = 0; i < engine.UnknownCount; i++)
                 plain.Unknowns[i] = new Plain(matcher.Solution[i] + (i == unknown ? step : 0.0));
             plain.Evaluate();
             return [.. plain.Residuals, plain.NetThrust / 1e5, plain.FuelFlow];
         }
 
         var differentiated = matcher.DifferentiateByUnknowns().Path;
-        for (var unknown = 0; unknown < Twin.UnknownCount; unknown++)
+        for (var unknown = 0; unknown < engine.UnknownCount; unknown++)
         {
             const double Step = 1e-5;
             var up = At(unknown, Step);
