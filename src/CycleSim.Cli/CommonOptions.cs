@@ -272,13 +272,13 @@ internal sealed class CommonOptions
 
     public static Option<string?> Text(string name, string description) => new(name) { Description = description };
 
-    public static double Quantity(ParseResult result, Option<string?> option, Dimension dimension, string otherwise)
-    {
-        var text = result.GetValue(option) ?? otherwise;
-        return Units.TryRead(text, dimension, out var value, out var problem)
+    public static double Quantity(ParseResult result, Option<string?> option, Dimension dimension, string otherwise) =>
+        Quantity(option.Name, result.GetValue(option) ?? otherwise, dimension);
+
+    public static double Quantity(string name, string text, Dimension dimension) =>
+        Units.TryRead(text, dimension, out var value, out var problem)
             ? value
-            : throw new UsageException($"{option.Name}: {problem}");
-    }
+            : throw new UsageException($"{name}: {problem}");
 
     public static double Share(string name, string text)
     {
@@ -315,7 +315,7 @@ internal sealed class CommonOptions
         : value >= 0.0 ? value
         : throw new UsageException($"{name}: '{text}' must not be negative.");
 
-    private static (string Name, string Value) Pair(string option, string text, string example)
+    public static (string Name, string Value) Pair(string option, string text, string example)
     {
         var at = text.IndexOf('=');
         return at > 0 && at < text.Length - 1

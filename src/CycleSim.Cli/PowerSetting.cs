@@ -82,12 +82,25 @@ internal sealed class PowerSetting
         if (Rating(result) is { } name)
             return model.AtRating(flight, model.Rating(name), inputs);
         var choice = _choices.Single(c => result.GetValue(c.Option) is not null);
-        var text = result.GetValue(choice.Option)!;
+        return model.At(flight, choice.Quantity, Value(choice, result.GetValue(choice.Option)!), inputs);
+    }
+
+    /// <summary>A power setting by the name of its option without the dashes; null for any other name.</summary>
+    public Limit? Named(string name, string text) =>
+        _choices.FirstOrDefault(c => c.Option.Name == "--" + name) is { } choice
+            ? new Limit(choice.Quantity, Value(choice, text))
+            : null;
+
+    /// <summary>The names that <see cref="Named"/> knows.</summary>
+    public IEnumerable<string> Names => _choices.Select(c => c.Option.Name[2..]);
+
+    private static double Value(Choice choice, string text)
+    {
         var value = choice.Dimension switch
         {
             Dimension.Share => CommonOptions.Share(choice.Option.Name, text),
             Dimension.Number => CommonOptions.Plain(choice.Option.Name, text),
-            _ => CommonOptions.Quantity(result, choice.Option, choice.Dimension, ""),
+            _ => CommonOptions.Quantity(choice.Option.Name, text, choice.Dimension),
         };
         if (choice.Quantity == Quantity.Lever && value is not (>= 0.0 and <= 1.0))
             throw new UsageException($"--lever: '{text}' must lie between 0 % (idle) and 100 % (full).");
@@ -95,7 +108,7 @@ internal sealed class PowerSetting
             throw new UsageException(
                 $"{choice.Option.Name}: '{text}' is {value * 100.0:0} % of design; write a share such as \"95 %\"."
             );
-        return model.At(flight, choice.Quantity, value, inputs);
+        return value;
     }
 
     /// <summary>

@@ -17,6 +17,7 @@ var root = new RootCommand(
       cyclesim flat-rating velda-27 --altitude "6000 ft" --units us
       cyclesim influence velda-27 --altitude "35000 ft" --mach 0.78 --thrust "22 kN"
       cyclesim surge-margin velda-27
+      cyclesim manoeuvre velda-27 --waypoint "altitude=0 ft, mach=0.2, lever=5 %" --waypoint "altitude=0 ft, mach=0.2, lever=95 %" --fuel-step "15 %"
       cyclesim point my-engine.toml --altitude "0 m" --mach 0 --thrust "100 kN" --json
 
     Exit codes: 0 done, 2 command line not understood, 3 definition file refused, 4 no solution, 1 anything else.
@@ -29,6 +30,7 @@ var root = new RootCommand(
     FlatRatingCommand.Create(),
     InfluenceCommand.Create(),
     SurgeMarginCommand.Create(),
+    ManoeuvreCommand.Create(),
 };
 
 var parsed = root.Parse(args);

@@ -41,6 +41,14 @@ internal sealed class Equations<T>(SizedEngine engine)
         var m = engine.UnknownCount;
         for (var i = 0; i < m; i++)
             Path.Unknowns[i] = T.Variable(x[i], i);
+        for (var k = 0; k < problem.HeldSpeeds.Length; k++)
+        {
+            var spare = engine.Layout.PowerOfftake(k);
+            _loaded[spare] = double.NaN;
+            Path.Unknowns[k] = T.Constant(problem.HeldSpeeds[k]);
+            Path.Inputs[spare] = T.Variable(x[k], k) * engine.Layout.Scale(spare);
+        }
+
         for (var k = 0; k < problem.Freed.Length; k++)
         {
             _loaded[problem.Freed[k]] = double.NaN;

@@ -64,7 +64,9 @@ public sealed class Matcher
     /// <summary>Inputs of the next solution; freed ones hold their solved value afterwards.</summary>
     public double[] Inputs { get; }
 
-    /// <summary>Unknowns of the last solution followed by the freed inputs (scaled).</summary>
+    /// <summary>
+    /// Unknowns of the last solution followed by the freed inputs (scaled); the power of a held spool in place of its speed.
+    /// </summary>
     public ReadOnlySpan<double> Solution => _x.AsSpan(0, _n);
 
     /// <summary>The pass at the last solution, or where the last attempt ended.</summary>
@@ -87,7 +89,7 @@ public sealed class Matcher
     /// </summary>
     public MatchOutcome SolveNext(MatchingProblem problem)
     {
-        if (!_solved)
+        if (!_solved || problem.HeldSpeeds.Length > 0 || _problem.HeldSpeeds.Length > 0)
             return Solve(problem);
         var sameConditions = Rescale(problem);
         Prepare(problem, _x.AsSpan(0, Engine.UnknownCount));
@@ -144,19 +146,25 @@ public sealed class Matcher
 
     private MatchOutcome Finish(MatchOutcome outcome)
     {
-        if (outcome.Status == MatchStatus.NotConverged)
+        // The other starts are settled points of their own speeds; held ones are followed from near by or not at all.
+        var follows = _problem.HeldSpeeds.Length == 0;
+        if (follows && outcome.Status == MatchStatus.NotConverged)
         {
             Prepare(_problem, Engine.DesignUnknowns);
             outcome = After(outcome, Newton());
         }
 
-        if (outcome.Status == MatchStatus.NotConverged && ColdStart.Guess(Engine, Inputs, _problem, _coldStart))
+        if (
+            follows
+            && outcome.Status == MatchStatus.NotConverged
+            && ColdStart.Guess(Engine, Inputs, _problem, _coldStart)
+        )
         {
             Prepare(_problem, _coldStart);
             outcome = After(outcome, Newton());
         }
 
-        if (outcome.Status == MatchStatus.NotConverged)
+        if (follows && outcome.Status == MatchStatus.NotConverged)
         {
             var followed = After(outcome, Follow());
             outcome =
@@ -240,6 +248,17 @@ public sealed class Matcher
                 : 1.6;
         }
 
+        if (problem.HeldSpeeds.Length is not 0 and var held && held != spools)
+            throw new ArgumentException($"{held} speeds are held; this engine has {spools} spools.");
+        for (var k = 0; k < problem.HeldSpeeds.Length; k++)
+        {
+            var spare = Engine.Layout.PowerOfftake(k);
+            // Scaled power is in MW; no spool of an engine has 1 MJ to spare for each kilogram of its air.
+            var large = Engine.DesignMassFlow;
+            _x[k] = Inputs[spare] / Engine.Layout.Scale(spare);
+            (_largestStep[k], _lower[k], _upper[k]) = (0.1 * large, -large, large);
+        }
+
         for (var k = 0; k < problem.Freed.Length; k++)
         {
             var scale = Engine.Layout.Scale(problem.Freed[k]);
@@ -253,6 +272,8 @@ public sealed class Matcher
     private void StoreFreed()
     {
         var m = Engine.UnknownCount;
+        for (var k = 0; k < _problem.HeldSpeeds.Length; k++)
+            Inputs[Engine.Layout.PowerOfftake(k)] = _x[k] * Engine.Layout.Scale(Engine.Layout.PowerOfftake(k));
         for (var k = 0; k < _problem.Freed.Length; k++)
             Inputs[_problem.Freed[k]] = _x[m + k] * Engine.Layout.Scale(_problem.Freed[k]);
     }

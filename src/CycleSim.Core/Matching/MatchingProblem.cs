@@ -8,8 +8,8 @@ namespace CycleSim.Matching;
 /// </summary>
 public sealed class MatchingProblem
 {
-    private MatchingProblem(Limit[] prescribed, Limit[] firstOf, int[] freed) =>
-        (Prescribed, FirstOf, Freed) = (prescribed, firstOf, freed);
+    private MatchingProblem(Limit[] prescribed, Limit[] firstOf, int[] freed, double[]? heldSpeeds = null) =>
+        (Prescribed, FirstOf, Freed, HeldSpeeds) = (prescribed, firstOf, freed, heldSpeeds ?? []);
 
     /// <summary>Outputs that must take a value.</summary>
     public Limit[] Prescribed { get; }
@@ -20,10 +20,26 @@ public sealed class MatchingProblem
     /// <summary>Inputs (indices of <see cref="InputLayout"/>) that are solved for.</summary>
     public int[] Freed { get; }
 
+    /// <summary>
+    /// Speeds (relative to design) at which the spools are held, one for each; empty where they settle. The power that a held
+    /// spool has to spare is solved for in place of its speed and stands, added to the offtake, in its input.
+    /// </summary>
+    public double[] HeldSpeeds { get; }
+
     internal int ConditionCount => Prescribed.Length + (FirstOf.Length > 0 ? 1 : 0);
 
     /// <summary>The power at which one output takes a value.</summary>
     public static MatchingProblem For(Quantity quantity, double value) => new([new Limit(quantity, value)], [], []);
+
+    /// <summary>
+    /// The first moment of a transient: the spools still turn as they did while one output, the fuel flow say, has already taken
+    /// its new value. To be solved from a settled point near by.
+    /// </summary>
+    /// <param name="speeds">speed of every spool relative to design</param>
+    /// <param name="quantity">what is prescribed</param>
+    /// <param name="value">its value, SI</param>
+    public static MatchingProblem AtHeldSpeeds(ReadOnlySpan<double> speeds, Quantity quantity, double value) =>
+        new([new Limit(quantity, value)], [], [], speeds.ToArray());
 
     /// <summary>The power at which the first of several limits is reached.</summary>
     public static MatchingProblem FirstLimit(params ReadOnlySpan<Limit> limits) =>

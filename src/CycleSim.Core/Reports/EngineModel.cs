@@ -68,6 +68,42 @@ public sealed class EngineModel
         return Report(outcome, flight, new Limit(quantity, value));
     }
 
+    /// <summary>
+    /// The point just after a step of fuel at a point of this engine: speeds and inputs as they were, fuel flow times
+    /// <paramref name="fuelRatio"/>. What the turbines then give beyond what the compressors take stands in the spools' offtake.
+    /// </summary>
+    /// <param name="settled">a settled point of this engine</param>
+    /// <param name="fuelRatio">fuel flow over that of the settled point, 0.2 to 3</param>
+    /// <param name="inputs">the inputs of the settled point; its definition's bleeds and offtakes where null</param>
+    /// <exception cref="NoSolutionException">No such point: a compressor surges first, or the combustor cannot burn it.</exception>
+    public OperatingPoint AfterFuelStep(OperatingPoint settled, double fuelRatio, double[]? inputs = null)
+    {
+        if (fuelRatio is not (>= 0.2 and <= 3.0))
+            throw new NoSolutionException($"a step to {fuelRatio:F3} of the fuel flow; expected 0.2 to 3.");
+        At(settled.Flight, Quantity.FuelFlow, settled.FuelFlow, inputs);
+        var speeds = settled.Spools.Select(s => s.RelativeSpeed).ToArray();
+        Span<double> start = stackalloc double[Engine.UnknownCount];
+        var fuel = new Limit(Quantity.FuelFlow, settled.FuelFlow);
+        // In small steps: each starts where the last one ended.
+        var steps = (int)Math.Ceiling(Math.Abs(fuelRatio - 1.0) / 0.05);
+        for (var k = 0; k <= steps; k++)
+        {
+            _matcher.Solution[..Engine.UnknownCount].CopyTo(start);
+            var ratio = steps == 0 ? 1.0 : 1.0 + (fuelRatio - 1.0) * k / steps;
+            fuel = fuel with { Value = settled.FuelFlow * ratio };
+            var outcome = _matcher.Solve(MatchingProblem.AtHeldSpeeds(speeds, fuel.Quantity, fuel.Value), start);
+            if (!outcome.Solved)
+                throw new NoSolutionException(
+                    $"{Engine.Definition.Name}: a step to {ratio:F3} of the fuel flow at {settled.Flight.PressureAltitude:F0} m, Mach "
+                        + $"{settled.Flight.Mach:F3}: {Diagnosis.Of(Engine, _matcher, outcome)}"
+                );
+            if (k == steps)
+                return Report(outcome, settled.Flight, fuel);
+        }
+
+        throw new InvalidOperationException("the last step returns");
+    }
+
     /// <summary>A rating by its name in the definition.</summary>
     /// <exception cref="RatingException">No such rating, or one that cannot be reconciled.</exception>
     public Rating Rating(string name)

@@ -42,6 +42,10 @@ public sealed class Influence
     public static Influence At(Matcher matcher)
     {
         var engine = matcher.Engine;
+        if (matcher.Problem.HeldSpeeds.Length > 0)
+            throw new InvalidOperationException(
+                "influence coefficients are those of settled points; here speeds are held"
+            );
         var outputs = OutputsOf(engine);
         var names = engine.Layout.Names;
         var n = matcher.Solution.Length;

@@ -26,7 +26,7 @@ public sealed class PointReporter
         for (var i = 0; i < matcher.Inputs.Length; i++)
             _path.Inputs[i] = new Plain(matcher.Inputs[i]);
         for (var i = 0; i < _engine.UnknownCount; i++)
-            _path.Unknowns[i] = new Plain(matcher.Solution[i]);
+            _path.Unknowns[i] = new Plain(matcher.Path.Unknowns[i].Value);
         _path.Evaluate();
 
         var p = _path;
