@@ -66,8 +66,16 @@ internal sealed class Display(bool us, string temperatures)
     /// <summary>Unit of a difference of temperature.</summary>
     public string DifferenceUnit => temperatures is "F" or "R" ? "°F" : "K";
 
-    public string Difference(double k) =>
-        (temperatures is "F" or "R" ? k * 1.8 : k).ToString("+0.0;-0.0;0.0", CultureInfo.InvariantCulture);
+    public string Difference(double k, int digits = 1)
+    {
+        var zeros = "0." + new string('0', digits);
+        return double.IsFinite(k)
+            ? (temperatures is "F" or "R" ? k * 1.8 : k).ToString(
+                $"+{zeros};-{zeros};{zeros}",
+                CultureInfo.InvariantCulture
+            )
+            : "-";
+    }
 
     public static string Percent(double ratio, int digits = 2) => Fixed(ratio * 100.0, digits);
 

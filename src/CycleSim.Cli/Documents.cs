@@ -225,7 +225,7 @@ internal static class Documents
         o["residual"] = Number(p.Outcome.Residual);
     }
 
-    private static JsonObject LimitOf(Limit limit) =>
+    public static JsonObject LimitOf(Limit limit) =>
         new()
         {
             ["quantity"] = limit.Quantity.ToString(),

@@ -15,6 +15,8 @@ var root = new RootCommand(
       cyclesim point velda-27 --design
       cyclesim point velda-27 --altitude "35000 ft" --mach 0.78 --isa "10 K" --rating max-climb
       cyclesim flat-rating velda-27 --altitude "6000 ft" --units us
+      cyclesim rating-map velda-27
+      cyclesim required-rating velda-27 --altitude "6000 ft" --temperature "38 °C" --thrust "95 kN"
       cyclesim influence velda-27 --altitude "35000 ft" --mach 0.78 --thrust "22 kN"
       cyclesim surge-margin velda-27
       cyclesim manoeuvre velda-27 --waypoint "altitude=0 ft, mach=0.2, lever=5 %" --waypoint "altitude=0 ft, mach=0.2, lever=95 %" --fuel-step "15 %"
@@ -28,6 +30,8 @@ var root = new RootCommand(
     EnginesCommand.Create(),
     PointCommand.Create(),
     FlatRatingCommand.Create(),
+    RatingMapCommand.Create(),
+    RequiredRatingCommand.Create(),
     InfluenceCommand.Create(),
     SurgeMarginCommand.Create(),
     ManoeuvreCommand.Create(),
