@@ -77,6 +77,20 @@ internal sealed class Display(bool us, string temperatures)
             : "-";
     }
 
+    /// <summary>A change of temperature with its sign; zero has none.</summary>
+    public string SignedDifference(double k, int digits) => Signed(temperatures is "F" or "R" ? k * 1.8 : k, digits);
+
+    /// <summary>A change in per cent or points with its sign; zero has none.</summary>
+    public static string SignedPercent(double ratio, int digits) => Signed(ratio * 100.0, digits);
+
+    private static string Signed(double value, int digits)
+    {
+        var text = Fixed(value, digits);
+        return text.Trim('-', '0', '.').Length == 0 ? (double.IsFinite(value) ? text.TrimStart('-') : text)
+            : value > 0.0 ? "+" + text
+            : text;
+    }
+
     public static string Percent(double ratio, int digits = 2) => Fixed(ratio * 100.0, digits);
 
     public static string Fixed(double value, int digits) =>

@@ -31,6 +31,14 @@ internal static class Documents
         return document;
     }
 
+    /// <summary>A point inside a document that has its provenance already.</summary>
+    public static JsonObject Point(OperatingPoint p)
+    {
+        var entry = new JsonObject();
+        Fill(entry, p);
+        return entry;
+    }
+
     public static JsonObject Point(OperatingPoint p, LoadedDefinition loaded, IReadOnlyList<LimitMargin> margins)
     {
         var document = Point(p, loaded);

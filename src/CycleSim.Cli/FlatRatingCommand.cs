@@ -58,13 +58,9 @@ internal static class FlatRatingCommand
                 Optional(result, step, Dimension.TemperatureDifference, 5.0)
             );
             var model = new EngineModel(loaded.Engine);
-            if (loaded.Engine.Ratings.Count == 0)
-                throw new DefinitionException([
-                    new Problem(loaded.Source, 0, 0, "", "defines no [[rating]]; add one to work out."),
-                ]);
             var study = FlatRating.Run(
                 model,
-                result.GetValue(rating) ?? loaded.Engine.Ratings[0].Name,
+                CommonOptions.RatingOf(result, rating, loaded),
                 altitude,
                 mach,
                 temperatures,

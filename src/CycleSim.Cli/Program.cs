@@ -4,6 +4,7 @@ using CycleSim.Definitions;
 using CycleSim.Engine;
 using CycleSim.Matching;
 using CycleSim.Reports;
+using CycleSim.Studies;
 
 Console.OutputEncoding = new System.Text.UTF8Encoding(false);
 var root = new RootCommand(
@@ -20,6 +21,7 @@ var root = new RootCommand(
       cyclesim influence velda-27 --altitude "35000 ft" --mach 0.78 --thrust "22 kN"
       cyclesim surge-margin velda-27
       cyclesim manoeuvre velda-27 --waypoint "altitude=0 ft, mach=0.2, lever=5 %" --waypoint "altitude=0 ft, mach=0.2, lever=95 %" --fuel-step "15 %"
+      cyclesim penalties velda-27 --altitude "0 m" --isa "15 K" --load "packs: customer-bleed=1.2 kg/s"
       cyclesim point my-engine.toml --altitude "0 m" --mach 0 --thrust "100 kN" --json
 
     Exit codes: 0 done, 2 command line not understood, 3 definition file refused, 4 no solution, 1 anything else.
@@ -35,6 +37,7 @@ var root = new RootCommand(
     InfluenceCommand.Create(),
     SurgeMarginCommand.Create(),
     ManoeuvreCommand.Create(),
+    PenaltiesCommand.Create(),
 };
 
 var parsed = root.Parse(args);
@@ -50,7 +53,7 @@ try
 {
     return parsed.Invoke(new InvocationConfiguration { EnableDefaultExceptionHandler = false });
 }
-catch (UsageException error)
+catch (Exception error) when (error is UsageException or LoadException)
 {
     return Fail(error, ExitCode.Usage);
 }

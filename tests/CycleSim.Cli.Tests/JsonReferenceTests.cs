@@ -17,6 +17,20 @@ public class JsonReferenceTests
         Collect(CommandLine.Run("point", "velda-27", "--design", "--json").Json, names);
         Collect(CommandLine.Run("engines", "--json").Json, names);
         Collect(CommandLine.Run("surge-margin", "velda-27", "--json").Json, names);
+        Collect(
+            CommandLine
+                .Run(
+                    "penalties",
+                    "velda-27",
+                    "--altitude",
+                    "0 m",
+                    "--load",
+                    "packs: customer-bleed=1 %, high=50 kW",
+                    "--json"
+                )
+                .Json,
+            names
+        );
         Assert.True(names.Count > 80, $"{names.Count} names");
         Assert.All(names, name => Assert.Contains($"`{name}`", page));
     }
