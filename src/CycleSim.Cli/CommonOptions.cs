@@ -133,12 +133,20 @@ internal sealed class CommonOptions
 
     /// <summary>The rating asked for by name; the first of the definition without a name.</summary>
     /// <exception cref="DefinitionException">The definition has no rating.</exception>
-    public static string RatingOf(ParseResult result, Option<string?> rating, LoadedDefinition loaded) =>
-        loaded.Engine.Ratings.Count == 0
-            ? throw new DefinitionException([
+    public static string RatingOf(ParseResult result, Option<string?> rating, LoadedDefinition loaded)
+    {
+        var first = FirstRating(loaded);
+        return result.GetValue(rating) ?? first;
+    }
+
+    /// <summary>The first rating of a definition.</summary>
+    /// <exception cref="DefinitionException">It has none.</exception>
+    public static string FirstRating(LoadedDefinition loaded) =>
+        loaded.Engine.Ratings.Count > 0
+            ? loaded.Engine.Ratings[0].Name
+            : throw new DefinitionException([
                 new Problem(loaded.Source, 0, 0, "", "defines no [[rating]]; add one to work out."),
-            ])
-            : result.GetValue(rating) ?? loaded.Engine.Ratings[0].Name;
+            ]);
 
     public FlightCondition Flight(ParseResult result)
     {

@@ -83,7 +83,8 @@ internal sealed class Display(bool us, string temperatures)
     /// <summary>A change in per cent or points with its sign; zero has none.</summary>
     public static string SignedPercent(double ratio, int digits) => Signed(ratio * 100.0, digits);
 
-    private static string Signed(double value, int digits)
+    /// <summary>A change with its sign; zero has none.</summary>
+    public static string Signed(double value, int digits)
     {
         var text = Fixed(value, digits);
         return text.Trim('-', '0', '.').Length == 0 ? (double.IsFinite(value) ? text.TrimStart('-') : text)

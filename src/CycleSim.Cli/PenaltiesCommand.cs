@@ -32,6 +32,7 @@ internal static class PenaltiesCommand
               cyclesim penalties velda-27 --altitude "0 m" --isa "15 K"
               cyclesim penalties velda-27 --altitude "35000 ft" --mach 0.78 --rating max-cruise --thrust "22 kN" \
                 --load "packs: customer-bleed=0.6 kg/s" --load "wing anti-ice: customer-bleed=1 %" --load "electrical: high=90 kW"
+              cyclesim penalties velda-27 --altitude "15000 ft" --mach 0.5 --rating max-climb --load "nacelle: nacelle-anti-ice=open"
               cyclesim penalties torvik-75 --altitude "0 m" --load "packs: customer-bleed=2 kg/s, high=50 kW" --csv penalties.csv
             """
         )
@@ -45,9 +46,9 @@ internal static class PenaltiesCommand
         common.AddTo(command, temperature: true);
         command.SetAction(result =>
         {
-            var loads = load.Read(result);
             var flight = common.Flight(result);
             var loaded = EngineLibrary.Load(result.GetRequiredValue(common.Engine));
+            var loads = load.Read(result, loaded.Engine);
             var model = new EngineModel(loaded.Engine);
             var study = Penalties.Run(
                 model,
@@ -112,10 +113,10 @@ internal static class PenaltiesCommand
         }
 
         Ranking(s, d);
-        foreach (var reason in Reasons(s).Distinct().Take(6))
+        foreach (var reason in Reasons(s, d).Distinct().Take(6))
             Layout.Line(reason);
         Layout.Line(
-            "pt: points of per cent; speeds over design; SM surge margin at constant corrected speed. 1 %: of the flow into the port's compressor."
+            "pt: points of per cent; speeds over design; SM surge margin at constant corrected speed. 1 %: of the flow into the port's compressor (the bypass flow behind the fan); nothing where a schedule has the port shut."
         );
         Layout.Line(
             "The cheapest source is of use only where its pressure and temperature suffice; ports behind a schedule are not ranked."
@@ -238,7 +239,7 @@ internal static class PenaltiesCommand
         );
     }
 
-    private static IEnumerable<string> Reasons(PenaltiesResult s)
+    private static IEnumerable<string> Reasons(PenaltiesResult s, Display d)
     {
         foreach (var p in s.PerUnit.Concat(s.Loads).Append(s.Together))
         {
@@ -246,12 +247,7 @@ internal static class PenaltiesCommand
                 yield return $"No point with {p.Name}: {reason}";
             if (p.Beyond.Count > 0)
                 yield return $"With {p.Name}, holding {QuantityText.Name(s.Limit.Quantity)} goes beyond "
-                    + string.Join(
-                        " and ",
-                        p.Beyond.Select(l =>
-                            $"{QuantityText.Name(l.Quantity)} = {QuantityText.Format(l.Quantity, l.Value)}"
-                        )
-                    )
+                    + string.Join(" and ", p.Beyond.Select(l => PointLayout.Setting(l, d)))
                     + ": the rating would stop earlier.";
         }
     }

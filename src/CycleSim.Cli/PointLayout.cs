@@ -177,7 +177,7 @@ internal static class PointLayout
         Layout.Line(Layout.Caution);
     }
 
-    private static string Left(LimitMargin margin, Display d)
+    public static string Left(LimitMargin margin, Display d)
     {
         var by = Math.Abs(margin.Left);
         var amount = margin.Limit.Quantity switch

@@ -22,6 +22,7 @@ var root = new RootCommand(
       cyclesim surge-margin velda-27
       cyclesim manoeuvre velda-27 --waypoint "altitude=0 ft, mach=0.2, lever=5 %" --waypoint "altitude=0 ft, mach=0.2, lever=95 %" --fuel-step "15 %"
       cyclesim penalties velda-27 --altitude "0 m" --isa "15 K" --load "packs: customer-bleed=1.2 kg/s"
+      cyclesim power-setting velda-27 --temperatures C
       cyclesim point my-engine.toml --altitude "0 m" --mach 0 --thrust "100 kN" --json
 
     Exit codes: 0 done, 2 command line not understood, 3 definition file refused, 4 no solution, 1 anything else.
@@ -38,6 +39,7 @@ var root = new RootCommand(
     SurgeMarginCommand.Create(),
     ManoeuvreCommand.Create(),
     PenaltiesCommand.Create(),
+    PowerTablesCommand.Create(),
 };
 
 var parsed = root.Parse(args);

@@ -9,7 +9,7 @@ open FSharp.Data.UnitSystems.SI.UnitSymbols
 type LoadKind =
     /// Air, kg/s.
     | Flow = 0
-    /// Air, as a share of the flow into the port's compressor.
+    /// Air, as a share of the flow into the port's compressor; behind the fan, of the bypass flow.
     | Share = 1
     /// Shaft power, W.
     | Power = 2

@@ -31,6 +31,26 @@ public class JsonReferenceTests
                 .Json,
             names
         );
+        Collect(
+            CommandLine.Run("power-setting", "velda-27", "--load", "packs: customer-bleed=1 %", "--json").Json,
+            names
+        );
+        Collect(
+            CommandLine
+                .Run(
+                    "power-setting",
+                    "velda-27",
+                    "--set-at",
+                    "60 kt",
+                    "--altitudes",
+                    "0 ft",
+                    "--outside",
+                    "30 °C",
+                    "--json"
+                )
+                .Json,
+            names
+        );
         Assert.True(names.Count > 80, $"{names.Count} names");
         Assert.All(names, name => Assert.Contains($"`{name}`", page));
     }

@@ -45,6 +45,15 @@ public class PenaltiesCommandTests
     }
 
     [Fact]
+    public void A_port_that_is_normally_shut_opens_to_what_the_definition_lets_through()
+    {
+        var open = CommandLine.Run([.. TakeOff, "--load", "anti-ice: nacelle-anti-ice=open", "--json"]);
+        // 0.4 kg/s in the definition.
+        var flow = CommandLine.Run([.. TakeOff, "--load", "anti-ice: nacelle-anti-ice=0.4 kg/s", "--json"]);
+        Assert.Equal(flow.Json.GetProperty("loads")[0].ToString(), open.Json.GetProperty("loads")[0].ToString());
+    }
+
+    [Fact]
     public void Rows_go_to_a_file()
     {
         var path = Path.Combine(Path.GetTempPath(), Path.GetRandomFileName() + ".csv");
@@ -71,6 +80,7 @@ public class PenaltiesCommandTests
     [InlineData(2, "more than nothing", "--load", "packs: customer-bleed=0 kg/s")]
     [InlineData(2, "more than nothing", "--load", "packs: customer-bleed=-1 %")]
     [InlineData(2, "less than 100 %", "--load", "packs: customer-bleed=120 %")]
+    [InlineData(2, "this engine has nacelle-anti-ice", "--load", "packs: customer-bleed=open")]
     [InlineData(2, "neither air", "--load", "packs: customer-bleed=3 K")]
     [InlineData(2, "not of the form", "--load", "customer-bleed=1 kg/s")]
     [InlineData(2, "two loads are called 'a'", "--load", "a: high=1 kW", "--load", "a: high=2 kW")]
