@@ -9,7 +9,8 @@ using CycleSim.Studies;
 Console.OutputEncoding = new System.Text.UTF8Encoding(false);
 var root = new RootCommand(
     """
-    Turbofan performance from a definition file: operating points, flat ratings, influence coefficients, surge margins.
+    Turbofan performance from a definition file: operating points, flat ratings, influence coefficients, surge margins,
+    sweeps.
 
     Examples:
       cyclesim engines
@@ -23,9 +24,10 @@ var root = new RootCommand(
       cyclesim manoeuvre velda-27 --waypoint "altitude=0 ft, mach=0.2, lever=5 %" --waypoint "altitude=0 ft, mach=0.2, lever=95 %" --fuel-step "15 %"
       cyclesim penalties velda-27 --altitude "0 m" --isa "15 K" --load "packs: customer-bleed=1.2 kg/s"
       cyclesim power-setting velda-27 --temperatures C
+      cyclesim sweep velda-27 --over "altitude=0 ft..40000 ft by 5000 ft" --over mach=0.5,0.78 --rating max-climb
       cyclesim point my-engine.toml --altitude "0 m" --mach 0 --thrust "100 kN" --json
 
-    Exit codes: 0 done, 2 command line not understood, 3 definition file refused, 4 no solution, 1 anything else.
+    Exit codes: 0 done, 2 command line not understood, 3 definition file refused, 4 no solution, 130 stopped, 1 anything else.
     Engineering study; not for dispatch, flight or maintenance.
     """
 )
@@ -40,6 +42,7 @@ var root = new RootCommand(
     ManoeuvreCommand.Create(),
     PenaltiesCommand.Create(),
     PowerTablesCommand.Create(),
+    SweepCommand.Create(),
 };
 
 var parsed = root.Parse(args);
@@ -55,7 +58,7 @@ try
 {
     return parsed.Invoke(new InvocationConfiguration { EnableDefaultExceptionHandler = false });
 }
-catch (Exception error) when (error is UsageException or LoadException)
+catch (Exception error) when (error is UsageException or LoadException or SweepException)
 {
     return Fail(error, ExitCode.Usage);
 }

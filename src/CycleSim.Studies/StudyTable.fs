@@ -85,7 +85,7 @@ type StudyTable
 [<AbstractClass; Sealed>]
 type TableFile private () =
 
-    static member private Atomically(path: string, write: Stream -> unit) =
+    static member internal Atomically(path: string, write: Stream -> unit) =
         let aside = path + ".writing"
 
         try
@@ -97,7 +97,7 @@ type TableFile private () =
         finally
             File.Delete aside
 
-    static member private Field(text: string) =
+    static member internal Field(text: string) =
         if text.IndexOfAny [| ','; '"'; '\n'; '\r' |] >= 0 then
             "\"" + text.Replace("\"", "\"\"") + "\""
         else

@@ -2,8 +2,15 @@ using CycleSim.Benchmarks;
 using CycleSim.Definitions;
 using CycleSim.Engine;
 
-const string Usage = "Usage: CycleSim.Benchmarks [--rounds N], N from 1 to 1000 (7 unless given).";
+const string Usage =
+    "Usage: CycleSim.Benchmarks [--rounds N], N from 1 to 1000 (7 unless given); or CycleSim.Benchmarks --sweep.";
 var rounds = 7;
+if (args is ["--sweep"])
+{
+    StudySweep.Run();
+    return 0;
+}
+
 if (
     args.Length > 0
     && (args is not ["--rounds", var text] || !int.TryParse(text, out rounds) || rounds is < 1 or > 1000)

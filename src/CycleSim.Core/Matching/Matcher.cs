@@ -79,6 +79,8 @@ public sealed class Matcher
     public MatchOutcome Solve(MatchingProblem problem, ReadOnlySpan<double> start)
     {
         Prepare(problem, start);
+        // What was met on another line says nothing about the one that begins here.
+        _curvatureKnown = false;
         return Finish(Newton());
     }
 
