@@ -43,6 +43,7 @@ var root = new RootCommand(
     PenaltiesCommand.Create(),
     PowerTablesCommand.Create(),
     SweepCommand.Create(),
+    JoinCommand.Create(),
 };
 
 var parsed = root.Parse(args);

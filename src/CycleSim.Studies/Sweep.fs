@@ -160,8 +160,12 @@ type Sweep private () =
                 worker.Start()
 
             try
+                let check () =
+                    ended.Token.ThrowIfCancellationRequested()
+
                 for index in first .. behind - 1 do
-                    receive (store.Take(index, fun () -> ended.Token.ThrowIfCancellationRequested()))
+                    check ()
+                    receive (store.Take(index, check))
             finally
                 ended.Cancel()
 

@@ -14,10 +14,20 @@ type internal SweepBlock = {
     Rows: int
     Numbers: float[][]
     Texts: string[][]
+    /// What `Encode` gave before; null where it has not been asked.
+    mutable Bytes: byte[] | null
 } with
 
     /// The block as bytes, the same for the same rows.
     member block.Encode() : byte[] =
+        match block.Bytes with
+        | null ->
+            let bytes = block.Write()
+            block.Bytes <- bytes
+            bytes
+        | bytes -> bytes
+
+    member private block.Write() : byte[] =
         use stream = new MemoryStream()
         use writer = new BinaryWriter(stream, UTF8Encoding false)
         writer.Write block.Rows
@@ -25,9 +35,18 @@ type internal SweepBlock = {
         for column in block.Numbers do
             writer.Write(MemoryMarshal.AsBytes(ReadOnlySpan(column, 0, block.Rows)))
 
+        // Most texts of a column are alike: each is written once, then which one stands in which row.
         for column in block.Texts do
-            for row in 0 .. block.Rows - 1 do
-                writer.Write column[row]
+            let distinct = Array.distinct column
+            let places = Dictionary<string, int>()
+            writer.Write distinct.Length
+
+            for text in distinct do
+                places[text] <- places.Count
+                writer.Write text
+
+            for text in column do
+                writer.Write(uint16 places[text])
 
         writer.Flush()
         stream.ToArray()
@@ -41,26 +60,19 @@ type internal SweepBlock = {
             reader.BaseStream.ReadExactly(MemoryMarshal.AsBytes(Span values))
             values
 
-        // Most texts of a column are alike; one string serves them all.
-        let seen = Dictionary<string, string>()
-
         let text _ =
-            let read = reader.ReadString()
-
-            match seen.TryGetValue read with
-            | true, known -> known
-            | _ ->
-                seen[read] <- read
-                read
+            let distinct = Array.init (reader.ReadInt32()) (fun _ -> reader.ReadString())
+            Array.init rows (fun _ -> distinct[int (reader.ReadUInt16())])
 
         let numbers = Array.init numbers column
-        let texts = Array.init texts (fun _ -> Array.init rows text)
+        let texts = Array.init texts text
 
         {
             Index = index
             Rows = rows
             Numbers = numbers
             Texts = texts
+            Bytes = bytes
         }
 
 /// Where finished blocks wait for their turn. Any thread may add; one thread takes them in order.
@@ -107,6 +119,10 @@ type internal MemoryStore() =
 type internal FileStore
     private (stream: FileStream, numbers: int, texts: int, places: Dictionary<int, struct (int64 * int)>) =
     inherit BlockStore()
+
+    // Blocks just finished wait in memory too, so that they need not be read back; only so many.
+    let recent = Dictionary<int, SweepBlock>()
+    let mostRecent = 64
 
     static let magic = "CycleSim sweep, unfinished 1\n"
 
@@ -229,12 +245,20 @@ type internal FileStore
         stream.Flush()
         places[block.Index] <- struct (position, bytes.Length)
 
+        if recent.Count < mostRecent then
+            recent[block.Index] <- block
+
     override _.Fetch index =
-        let struct (position, length) = places[index]
-        stream.Position <- position + int64 head
-        let bytes = Array.zeroCreate<byte> length
-        stream.ReadExactly bytes
-        SweepBlock.Decode(index, numbers, texts, bytes)
+        match recent.TryGetValue index with
+        | true, block ->
+            recent.Remove index |> ignore
+            block
+        | _ ->
+            let struct (position, length) = places[index]
+            stream.Position <- position + int64 head
+            let bytes = Array.zeroCreate<byte> length
+            stream.ReadExactly bytes
+            SweepBlock.Decode(index, numbers, texts, bytes)
 
     interface IDisposable with
         member _.Dispose() = stream.Dispose()

@@ -6,6 +6,7 @@ open System.Globalization
 open System.IO
 open System.Security.Cryptography
 open System.Text
+open System.Threading
 open Parquet
 open Parquet.Schema
 
@@ -54,7 +55,8 @@ module internal SweepKeys =
 type internal ParquetSink
     private (writer: ParquetWriter, fields: DataField[], numbers: int, metadata: KeyValuePair<string, string>[]) =
     let hash = RowsHash()
-    let buffer = Array.zeroCreate<Nullable<float>> SweepPlan.BlockSize
+    let present = Array.zeroCreate<float> SweepPlan.BlockSize
+    let levels = Array.zeroCreate<int> SweepPlan.BlockSize
 
     static let field (name: string) (kind: Type) nullable =
         DataField(name, kind, Nullable nullable)
@@ -69,7 +71,13 @@ type internal ParquetSink
     static member Open(stream: Stream, numbers: string[], texts: string[], metadata: KeyValuePair<string, string>[]) =
         let fields = ParquetSink.Fields(numbers, texts)
         let schema = ParquetSchema(fields |> Array.map (fun f -> f :> Field))
-        let writer = ParquetWriter.CreateAsync(schema, stream).GetAwaiter().GetResult()
+        // Numbers that are solved for are all different: no dictionary and no compression makes them less.
+        let options =
+            ParquetOptions(CompressionMethod = CompressionMethod.None, DictionaryEncodingSampleSize = 64)
+
+        let writer =
+            ParquetWriter.CreateAsync(schema, stream, options).GetAwaiter().GetResult()
+
         new ParquetSink(writer, fields, numbers.Length, metadata)
 
     member private _.WriteGroup(block: SweepBlock) =
@@ -79,14 +87,25 @@ type internal ParquetSink
             for column in 0 .. numbers - 1 do
                 let values = block.Numbers[column]
 
-                for row in 0 .. block.Rows - 1 do
-                    buffer[row] <-
-                        if Double.IsNaN values[row] then
-                            Nullable()
-                        else
-                            Nullable values[row]
+                let mutable count = 0
 
-                do! group.WriteAsync<float>(fields[column], ReadOnlyMemory<Nullable<float>>(buffer, 0, block.Rows))
+                // Level 1 stands for a number, 0 for none; only the numbers themselves follow.
+                for row in 0 .. block.Rows - 1 do
+                    if Double.IsNaN values[row] then
+                        levels[row] <- 0
+                    else
+                        levels[row] <- 1
+                        present[count] <- values[row]
+                        count <- count + 1
+
+                do!
+                    group.WriteAllPartsAsync<float>(
+                        fields[column],
+                        ReadOnlyMemory(present, 0, count),
+                        Nullable(ReadOnlyMemory(levels, 0, block.Rows)),
+                        Nullable(),
+                        CancellationToken.None
+                    )
 
             for column in 0 .. block.Texts.Length - 1 do
                 do! group.WriteAsync(fields[numbers + column], block.Texts[column] :> IReadOnlyCollection<string>)

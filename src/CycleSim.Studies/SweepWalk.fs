@@ -228,6 +228,10 @@ type internal SweepWalk(plan: SweepPlan) =
         |> Option.defaultValue 1
 
     let numbers = plan.NumberColumns.Length
+    let setsRating = plan.SetsRating
+    let corridor = plan.Corridor
+    let baseInputs = plan.BaseInputs
+    let gridPoints = plan.GridPoints
     let texts = plan.TextColumns.Length
 
     let flight altitude mach =
@@ -263,7 +267,7 @@ type internal SweepWalk(plan: SweepPlan) =
             try
                 let condition = flight altitude mach
                 outside <- condition.StaticTemperature
-                plan.BaseInputs.CopyTo(matcher.Inputs, 0)
+                baseInputs.CopyTo(matcher.Inputs, 0)
                 InputLayout.SetFlight(matcher.Inputs.AsSpan(), &condition)
 
                 for struct (k, input) in loads do
@@ -288,7 +292,7 @@ type internal SweepWalk(plan: SweepPlan) =
             let value = if solved then readers[k].Invoke reading else nan
             columns[3 + own.Length + k][at] <- if Double.IsFinite value then value else nan
 
-        if plan.SetsRating then
+        if setsRating then
             words[0][at] <- ratingNames[int current[power]]
             words[1][at] <- governing
 
@@ -309,7 +313,7 @@ type internal SweepWalk(plan: SweepPlan) =
     /// The rows of a block; ends between two points where it is told to.
     member _.Block(index: int, cancellation: CancellationToken) : SweepBlock =
         let first = int64 index * int64 SweepPlan.BlockSize
-        let last = min plan.GridPoints (first + int64 SweepPlan.BlockSize)
+        let last = min gridPoints (first + int64 SweepPlan.BlockSize)
         let size = int (last - first)
         let columns = Array.init numbers (fun _ -> Array.zeroCreate<float> size)
         let words = Array.init texts (fun _ -> Array.zeroCreate<string> size)
@@ -333,7 +337,7 @@ type internal SweepWalk(plan: SweepPlan) =
             let height = altitude ()
             let speed = SweepPlan.MachOf(height, mach (), airspeed ())
 
-            if SweepPlan.Outside(plan.Corridor, height, speed) = 0 then
+            if SweepPlan.Outside(corridor, height, speed) = 0 then
                 row columns words rows height speed
                 rows <- rows + 1
 
@@ -342,4 +346,5 @@ type internal SweepWalk(plan: SweepPlan) =
             Rows = rows
             Numbers = columns |> Array.map (Array.truncate rows)
             Texts = words |> Array.map (Array.truncate rows)
+            Bytes = null
         }
