@@ -71,6 +71,8 @@ internal static class SweepCommand
             common.Temperature,
             common.Humidity,
             common.Bleed,
+            common.Open,
+            common.Shut,
             common.Offtake,
             common.Worn,
             common.Json,

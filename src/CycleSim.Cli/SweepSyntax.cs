@@ -15,7 +15,7 @@ internal sealed partial class SweepSyntax(SizedEngine engine)
         Axes joined by & take their values together: "altitude=0 ft,10000 ft & cas=250 kt,280 kt".
 
         Names: altitude, mach, cas, isa, temperature, humidity; one power setting: rating, share RATING (of its thrust),
-        thrust, fuel-flow, T3, T4, T41, EGT, T5, N1, N2, N3, corrected-N1, EPR, P3, lever; and bleed PORT (in % or kg/s),
+        thrust, installed-thrust, fuel-flow, T3, T4, T41, EGT, T5, N1, N2, N3, corrected-N1, EPR, P3, lever; and bleed PORT (in % or kg/s),
         offtake SPOOL, worn COMPONENT efficiency, worn COMPONENT flow.
         """;
 
@@ -30,6 +30,7 @@ internal sealed partial class SweepSyntax(SizedEngine engine)
         ["temperature"] = (SweepInput.OutsideTemperature, Dimension.Temperature),
         ["humidity"] = (SweepInput.RelativeHumidity, Dimension.Share),
         ["thrust"] = (SweepInput.Power(Quantity.NetThrust), Dimension.Force),
+        ["installed-thrust"] = (SweepInput.Power(Quantity.InstalledThrust), Dimension.Force),
         ["fuel-flow"] = (SweepInput.Power(Quantity.FuelFlow), Dimension.MassFlow),
         ["T3"] = (SweepInput.Power(Quantity.T3), Dimension.Temperature),
         ["T4"] = (SweepInput.Power(Quantity.T4), Dimension.Temperature),

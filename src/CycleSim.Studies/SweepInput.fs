@@ -78,6 +78,7 @@ type SweepInput internal (kind: InputKind, name: string, unit: string, low: floa
         let name, unit =
             match quantity with
             | Quantity.NetThrust -> "set_net_thrust_N", "N"
+            | Quantity.InstalledThrust -> "set_installed_thrust_N", "N"
             | Quantity.FuelFlow -> "set_fuel_flow_kg_per_s", "kg/s"
             | Quantity.T3
             | Quantity.T4
@@ -90,7 +91,8 @@ type SweepInput internal (kind: InputKind, name: string, unit: string, low: floa
             | Quantity.N3 -> $"set_{quantity}_relative_speed", ""
             | Quantity.Epr -> "set_engine_pressure_ratio", ""
             | Quantity.CorrectedN1 -> "set_corrected_N1_relative_speed", ""
-            | _ -> "set_lever_position", ""
+            | Quantity.Lever -> "set_lever_position", ""
+            | other -> raise (ArgumentOutOfRangeException(nameof quantity, other, "no output that can set the power"))
 
         let low, high =
             match quantity with

@@ -18,8 +18,9 @@ public sealed class Influence
         IReadOnlyList<string> inputs,
         IReadOnlyList<string> outputs,
         double[] values,
-        double[,] derivatives
-    ) => (Inputs, Outputs, OutputValues, _derivatives) = (inputs, outputs, values, derivatives);
+        double[,] derivatives,
+        double[] bySetting
+    ) => (Inputs, Outputs, OutputValues, _derivatives, BySetting) = (inputs, outputs, values, derivatives, bySetting);
 
     /// <summary>Names with units, in SI; see <see cref="InputLayout.Names"/>.</summary>
     public IReadOnlyList<string> Inputs { get; }
@@ -32,6 +33,12 @@ public sealed class Influence
 
     /// <summary>Derivative of an output with respect to an input, SI over SI.</summary>
     public double this[int output, int input] => _derivatives[output, input];
+
+    /// <summary>
+    /// Derivative of each output with respect to the prescribed value that sets the power, inputs held, SI over SI; NaN where
+    /// the power is not set by one value above zero.
+    /// </summary>
+    public IReadOnlyList<double> BySetting { get; }
 
     /// <summary>Derivative by names.</summary>
     /// <exception cref="ArgumentException">No such name.</exception>
@@ -53,6 +60,7 @@ public sealed class Influence
         var jacobian = equations.Rows[..n].ToArray().Select(r => r.Partials).ToArray();
         var byUnknowns = outputs.Select(o => o.Value(equations.Path)).ToArray();
 
+        var bySetting = MovedBySetting(matcher, jacobian, byUnknowns);
         var derivatives = new double[outputs.Count, names.Count];
         var freed = matcher.Problem.Freed;
         for (var first = 0; first < names.Count; first += Dual.Width)
@@ -85,8 +93,29 @@ public sealed class Influence
             names,
             [.. outputs.Select(o => o.Name)],
             [.. byUnknowns.Select(o => o.Value)],
-            derivatives
+            derivatives,
+            bySetting
         );
+    }
+
+    // The last row is output over value less one: a change of the value moves it by minus itself over the value.
+    private static double[] MovedBySetting(Matcher matcher, Vector512<double>[] jacobian, Dual[] byUnknowns)
+    {
+        var problem = matcher.Problem;
+        var n = jacobian.Length;
+        var move = new double[n];
+        if (
+            problem.Prescribed is not [{ Value: not 0.0 } setting]
+            || problem.FirstOf.Length > 0
+            || problem.HeldSpeeds.Length > 0
+        )
+            return [.. byUnknowns.Select(_ => double.NaN)];
+        move[n - 1] = 1.0 / setting.Value;
+        if (!LinearSystem.Solve((Vector512<double>[])jacobian.Clone(), move, n))
+            throw new NoSolutionException(
+                $"{matcher.Engine.Definition.Name}: the equations are singular at this point."
+            );
+        return [.. byUnknowns.Select(output => Enumerable.Range(0, n).Sum(k => output.Partial(k) * move[k]))];
     }
 
     private static List<(string Name, Func<FlowPath<Dual>, Dual> Value)> OutputsOf(SizedEngine engine)
