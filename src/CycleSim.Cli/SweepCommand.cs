@@ -115,6 +115,19 @@ internal static class SweepCommand
         return command;
     }
 
+    public static JsonArray Columns(IReadOnlyList<Studies.TableColumn> columns) =>
+        Documents.Array(
+            columns,
+            c => new JsonObject
+            {
+                ["name"] = c.Name,
+                ["unit"] = c.Unit,
+                ["values"] = new JsonArray([
+                    .. c.IsText ? c.Texts.Select(t => (JsonNode?)t) : c.Numbers.Select(Documents.Number),
+                ]),
+            }
+        );
+
     private static double Bound(ParseResult result, Option<string?> option, Dimension dimension, double otherwise) =>
         result.GetValue(option) is null ? otherwise : CommonOptions.Quantity(result, option, dimension, "");
 
@@ -199,17 +212,7 @@ internal static class SweepCommand
             if (Json)
             {
                 var document = Document(sweep.Summary);
-                document["columns"] = Documents.Array(
-                    sweep.Columns,
-                    c => new JsonObject
-                    {
-                        ["name"] = c.Name,
-                        ["unit"] = c.Unit,
-                        ["values"] = new JsonArray([
-                            .. c.IsText ? c.Texts.Select(t => (JsonNode?)t) : c.Numbers.Select(Documents.Number),
-                        ]),
-                    }
-                );
+                document["columns"] = Columns(sweep.Columns);
                 Documents.Print(document);
                 return;
             }

@@ -134,9 +134,16 @@ internal sealed partial class SweepSyntax(SizedEngine engine)
         }
     }
 
-    private static double[] Values(string name, string text, Dimension dimension, Func<double, double> convert)
+    /// <summary>A list, steps or a number of values, given to an option of its own.</summary>
+    /// <exception cref="UsageException">It cannot be understood.</exception>
+    public static double[] List(string option, string text, Dimension dimension) =>
+        Read(option, text, dimension, v => v);
+
+    private static double[] Values(string name, string text, Dimension dimension, Func<double, double> convert) =>
+        Read($"--over {name}", text, dimension, convert);
+
+    private static double[] Read(string where, string text, Dimension dimension, Func<double, double> convert)
     {
-        var where = $"--over {name}";
         if (!text.Contains(".."))
         {
             var parts = text.Split(',', StringSplitOptions.TrimEntries);
