@@ -27,6 +27,7 @@ var root = new RootCommand(
       cyclesim sweep velda-27 --over "altitude=0 ft..40000 ft by 5000 ft" --over mach=0.5,0.78 --rating max-climb
       cyclesim throttle velda-27 --altitude "35000 ft" --mach 0.78 --rating max-cruise
       cyclesim tables velda-27 --rating max-climb --csv climb.csv
+      cyclesim reduced-thrust velda-27 --altitude "0 ft" --temperature "20 °C" --wanted-thrust "100 kN"
       cyclesim point my-engine.toml --altitude "0 m" --mach 0 --thrust "100 kN" --json
 
     Exit codes: 0 done, 2 command line not understood, 3 definition file refused, 4 no solution, 130 stopped, 1 anything else.
@@ -48,6 +49,7 @@ var root = new RootCommand(
     JoinCommand.Create(),
     ThrottleCommand.Create(),
     TablesCommand.Create(),
+    ReducedThrustCommand.Create(),
 };
 
 var parsed = root.Parse(args);

@@ -51,6 +51,10 @@ public class JsonReferenceTests
                 .Json,
             names
         );
+        Collect(
+            CommandLine.Run("reduced-thrust", "velda-27", "--altitude", "0 m", "--assumed", "45 °C", "--json").Json,
+            names
+        );
         Assert.True(names.Count > 80, $"{names.Count} names");
         Assert.All(names, name => Assert.Contains($"`{name}`", page));
     }
