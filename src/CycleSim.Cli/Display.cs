@@ -87,7 +87,9 @@ internal sealed class Display(bool us, string temperatures)
     public static string Signed(double value, int digits)
     {
         var text = Fixed(value, digits);
-        return text.Trim('-', '0', '.').Length == 0 ? (double.IsFinite(value) ? text.TrimStart('-') : text)
+        if (!double.IsFinite(value))
+            return text;
+        return text.Trim('-', '0', '.').Length == 0 ? text.TrimStart('-')
             : value > 0.0 ? "+" + text
             : text;
     }

@@ -3,6 +3,7 @@ using System.Text.Json.Nodes;
 using CycleSim.Definitions;
 using CycleSim.Engine;
 using CycleSim.Reports;
+using CycleSim.Studies;
 
 namespace CycleSim.Cli;
 
@@ -22,9 +23,12 @@ internal static class InfluenceCommand
               cyclesim influence velda-27 --design
               cyclesim influence velda-27 --altitude "35000 ft" --mach 0.78 --thrust "22 kN"
               cyclesim influence torvik-75 --altitude "0 m" --isa "15 K" --T41 "1700 K" --json
+              cyclesim influence velda-27 --design --parquet influence.parquet
             """
         );
         common.AddTo(command, temperature: true);
+        command.Add(common.Csv);
+        command.Add(common.Parquet);
         setting.AddTo(command, rating: false);
         command.SetAction(result =>
         {
@@ -33,6 +37,7 @@ internal static class InfluenceCommand
             var model = new EngineModel(loaded.Engine);
             var point = setting.Solve(result, common, model);
             var influence = model.InfluenceOfLastPoint();
+            Exports.Write(result, common, InfluenceTable.Of(influence, point, Exports.Provenance(result, loaded)));
             if (result.GetValue(common.Json))
                 Documents.Print(Document(influence, point, loaded));
             else
@@ -58,7 +63,7 @@ internal static class InfluenceCommand
         var compressors = p.Compressors.Select(c => c.Name).ToList();
         var spools = p.Spools.Count;
         string Relative(string output, int input, double step) =>
-            Signed(
+            Display.Signed(
                 influence.Of(output, influence.Inputs[input])
                     * step
                     / influence.OutputValues[IndexOf(influence, output)]
@@ -66,7 +71,7 @@ internal static class InfluenceCommand
                 3
             );
         string Absolute(string output, int input, double step) =>
-            Signed(influence.Of(output, influence.Inputs[input]) * step, 2);
+            Display.Signed(influence.Of(output, influence.Inputs[input]) * step, 2);
         var rows = new List<string[]>();
         for (var i = 0; i < influence.Inputs.Count; i++)
         {
@@ -79,7 +84,10 @@ internal static class InfluenceCommand
                 Relative("fuel_flow_kg_per_s", i, step),
                 Relative("sfc_kg_per_N_s", i, step),
                 .. new[] { "T41_K", "T45_K" }.Select(o =>
-                    Signed(influence.Of(o, influence.Inputs[input]) * step * (d.DifferenceUnit == "K" ? 1.0 : 1.8), 2)
+                    Display.Signed(
+                        influence.Of(o, influence.Inputs[input]) * step * (d.DifferenceUnit == "K" ? 1.0 : 1.8),
+                        2
+                    )
                 ),
                 .. Enumerable.Range(1, spools).Select(n => Absolute($"N{n}_relative_speed", input, step * 100.0)),
                 .. compressors.Select(c => Absolute($"surge_margin_{c}", input, step * 100.0)),
@@ -159,12 +167,4 @@ internal static class InfluenceCommand
     }
 
     private static int IndexOf(Influence influence, string output) => influence.Outputs.ToList().IndexOf(output);
-
-    private static string Signed(double value, int digits)
-    {
-        var text = Display.Fixed(value, digits);
-        return text.Trim('-', '0', '.').Length == 0 ? text.TrimStart('-')
-            : value > 0.0 ? "+" + text
-            : text;
-    }
 }

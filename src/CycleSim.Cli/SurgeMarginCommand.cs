@@ -25,7 +25,7 @@ internal static class SurgeMarginCommand
             Examples:
               cyclesim surge-margin velda-27
               cyclesim surge-margin velda-27 --worn "hpc efficiency=-3 %" --worn "hpc flow=-2 %"
-              cyclesim surge-margin velda-27 --bleed "handling-bleed=0 %"
+              cyclesim surge-margin velda-27 --bleed "handling-bleed=0 %" --csv margins.csv
             """
         )
         {
@@ -39,26 +39,32 @@ internal static class SurgeMarginCommand
             common.UnitSystem,
             common.Temperatures,
             common.Json,
+            common.Csv,
+            common.Parquet,
         };
-        command.SetAction(result =>
-        {
-            var loaded = EngineLibrary.Load(result.GetRequiredValue(common.Engine));
-            var model = new EngineModel(loaded.Engine);
-            if (loaded.Engine.Ratings.Count == 0)
-                throw new UsageException(
-                    $"{loaded.Source} defines no [[rating]]; the survey needs one for its highest power."
+        command.SetAction(
+            (result, cancellation) =>
+            {
+                var loaded = EngineLibrary.Load(result.GetRequiredValue(common.Engine));
+                var model = new EngineModel(loaded.Engine);
+                if (loaded.Engine.Ratings.Count == 0)
+                    throw new UsageException(
+                        $"{loaded.Source} defines no [[rating]]; the survey needs one for its highest power."
+                    );
+                var survey = SurgeSurvey.Run(
+                    model,
+                    result.GetValue(rating) ?? loaded.Engine.Ratings[0].Name,
+                    loads: common.Loads(result, model.Engine),
+                    cancellation: cancellation
                 );
-            var survey = SurgeSurvey.Run(
-                model,
-                result.GetValue(rating) ?? loaded.Engine.Ratings[0].Name,
-                loads: common.Loads(result, model.Engine)
-            );
-            if (result.GetValue(common.Json))
-                Documents.Print(Document(survey, loaded));
-            else
-                Print(survey, loaded, common.Display(result));
-            return ExitCode.Done;
-        });
+                Exports.Write(result, common, survey.Table(Exports.Provenance(result, loaded)));
+                if (result.GetValue(common.Json))
+                    Documents.Print(Document(survey, loaded));
+                else
+                    Print(survey, loaded, common.Display(result));
+                return Task.FromResult(ExitCode.Done);
+            }
+        );
         return command;
     }
 

@@ -50,7 +50,35 @@ type SurgeSurveyResult = {
     Points: int
     WithoutSolution: IReadOnlyList<string>
     Budgets: IReadOnlyList<MarginBudget>
-}
+} with
+
+    /// A row a compressor.
+    member result.Table(provenance: IReadOnlyList<KeyValuePair<string, string>>) : StudyTable =
+        let budgets = Seq.toArray result.Budgets
+
+        let number name unit (value: MarginBudget -> float) =
+            TableColumn.Of(name, unit, budgets |> Array.map value)
+
+        StudyTable.Of(
+            $"Surge margins of {result.Engine}, from rating {result.Rating} down",
+            [|
+                yield! provenance
+                KeyValuePair("points_solved", string result.Points)
+                KeyValuePair("points_without_solution", string result.WithoutSolution.Count)
+            |],
+            [|
+                TableColumn.OfText("compressor", budgets |> Array.map _.Compressor)
+                number "surge_margin_constant_flow" "" _.Thinnest.MarginConstantFlow
+                number "surge_margin_constant_speed" "" _.Thinnest.MarginConstantSpeed
+                number "margin_required" "" _.Required
+                number "margin_slack" "" _.Slack
+                number "pressure_altitude_m" "m" (fun b -> float b.Thinnest.PressureAltitude)
+                number "mach" "" _.Thinnest.Mach
+                number "isa_offset_K" "K" (fun b -> float b.Thinnest.IsaOffset)
+                number "thrust_share" "" _.Thinnest.ThrustShare
+                number "relative_corrected_speed" "" _.Thinnest.RelativeCorrectedSpeed
+            |]
+        )
 
 /// Where each compressor is nearest to surge, and whether that is enough.
 [<AbstractClass; Sealed>]
