@@ -81,6 +81,11 @@ catch (NoSolutionException error)
 {
     return Fail(error, ExitCode.NoSolution);
 }
+catch (OperationCanceledException)
+{
+    Console.Error.WriteLine("Stopped; nothing was written.");
+    return ExitCode.Stopped;
+}
 
 static int Fail(Exception error, int code)
 {

@@ -5,7 +5,7 @@ public class ExportTests
     [Theory]
     [InlineData("output,input,output_value,derivative", "net_thrust_N,ambient_pressure_Pa,", "influence", "--design")]
     [InlineData("compressor,surge_margin_constant_flow", "hpc,", "surge-margin")]
-    [InlineData("outside_temperature_K,isa_offset_K,governing", "248.15", "flat-rating")]
+    [InlineData("outside_temperature_K,isa_offset_K,governing", "258.15,-30,", "flat-rating")]
     public void Rows_go_to_files(string heading, string row, string command, params string[] arguments)
     {
         var folder = Directory.CreateTempSubdirectory().FullName;

@@ -137,4 +137,34 @@ public class PowerTablesCommandTests
         Assert.Contains(message, run.Error);
         Assert.Equal("", run.Output);
     }
+
+    [Fact]
+    public void An_interrupted_table_stops_and_leaves_no_file()
+    {
+        var path = Path.Combine(Path.GetTempPath(), Path.GetRandomFileName() + ".csv");
+        var start = new System.Diagnostics.ProcessStartInfo("dotnet")
+        {
+            RedirectStandardOutput = true,
+            RedirectStandardError = true,
+        };
+        var altitudes = string.Join(", ", Enumerable.Range(0, 60).Select(n => $"{150 * n} ft"));
+        var offsets = string.Join(", ", Enumerable.Range(-40, 80).Select(n => $"{n} K"));
+        string[] table = ["power-setting", "torvik-75", "--altitudes", altitudes, "--isa-offsets", offsets];
+        var loads = Enumerable.Range(1, 20).SelectMany(n => new[] { "--load", $"load-{n}: customer-bleed={n}e-3 kg/s" });
+        foreach (
+            var argument in new[] { Path.Combine(AppContext.BaseDirectory, "cyclesim.dll") }
+                .Concat(table)
+                .Concat(loads)
+                .Concat(["--csv", path])
+        )
+            start.ArgumentList.Add(argument);
+        using var process = System.Diagnostics.Process.Start(start)!;
+        Thread.Sleep(1500);
+        System.Diagnostics.Process.Start("kill", ["-INT", process.Id.ToString()]).WaitForExit();
+        var error = process.StandardError.ReadToEnd();
+        process.WaitForExit();
+        Assert.Equal(130, process.ExitCode);
+        Assert.DoesNotContain("exception", error, StringComparison.OrdinalIgnoreCase);
+        Assert.False(File.Exists(path));
+    }
 }

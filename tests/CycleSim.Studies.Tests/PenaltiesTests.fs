@@ -71,7 +71,7 @@ let private values (e: PenaltyEffects) = [
 ]
 
 // A port behind the compressor, one half-way and one in front, as the source has them.
-let private withPorts name =
+let private withEdit name (edit: string -> string) =
     let text = EngineLibrary.Text name
 
     let port (name, work) =
@@ -85,10 +85,12 @@ let private withPorts name =
     let path = Path.Combine(Path.GetTempPath(), Path.GetRandomFileName() + ".toml")
 
     try
-        File.WriteAllText(path, text.Replace("[bypass_duct]", ports + "[bypass_duct]"))
-        EngineModel((EngineLibrary.Load path).Engine)
+        File.WriteAllText(path, (edit text).Replace("[bypass_duct]", ports + "[bypass_duct]"))
+        (EngineLibrary.Load path).Engine
     finally
         File.Delete path
+
+let private withPorts name = EngineModel(withEdit name id)
 
 /// Bartel and Young 2008, Simplified Thrust and Fuel Consumption Models for Modern Two-Shaft Turbofan Engines, J. Aircraft
 /// 45(4), Fig. 9: static take-off thrust over that without bleed, A = c1 + c2 w + c3 w2, against the share of core air taken
@@ -276,4 +278,17 @@ let tests =
                     let published = publishedRatio percent w
                     Expect.isGreaterThan (small port percent) published $"{percent} %% at w = {w}, velda-27"
                     Expect.isLessThan (geared port percent) published $"{percent} %% at w = {w}, lunde-14g")
+
+        // Why: with more of the same compression done ahead of the port, more work is lost with the air.
+        testCase "the more work is done in front of the port, the more its air costs" (fun () ->
+            let shifted =
+                EngineModel(
+                    withEdit "velda-27" (fun text ->
+                        text
+                            .Replace("pressure_ratio = 1.75", "pressure_ratio = 2.8")
+                            .Replace("pressure_ratio = 12.0", "pressure_ratio = 7.5"))
+                )
+
+            let little, much = takeOffRatio (withPorts "velda-27"), takeOffRatio shifted
+            Expect.isLessThan (much "test-front" 4) (little "test-front" 4 - 0.005) "thrust with 4 % taken in front")
     ]
