@@ -150,7 +150,9 @@ public class PowerTablesCommandTests
         var altitudes = string.Join(", ", Enumerable.Range(0, 60).Select(n => $"{150 * n} ft"));
         var offsets = string.Join(", ", Enumerable.Range(-40, 80).Select(n => $"{n} K"));
         string[] table = ["power-setting", "torvik-75", "--altitudes", altitudes, "--isa-offsets", offsets];
-        var loads = Enumerable.Range(1, 20).SelectMany(n => new[] { "--load", $"load-{n}: customer-bleed={n}e-3 kg/s" });
+        var loads = Enumerable
+            .Range(1, 20)
+            .SelectMany(n => new[] { "--load", $"load-{n}: customer-bleed={n}e-3 kg/s" });
         foreach (
             var argument in new[] { Path.Combine(AppContext.BaseDirectory, "cyclesim.dll") }
                 .Concat(table)
