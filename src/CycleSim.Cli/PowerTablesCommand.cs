@@ -189,7 +189,7 @@ internal static class PowerTablesCommand
             from altitude in altitudes
             from temperature in temperatures
             select CommonOptions.Checked(() =>
-                PowerTables.TakeOffRun(
+                TakeOffRun.Run(
                     model,
                     rating,
                     altitude,

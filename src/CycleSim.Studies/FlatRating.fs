@@ -103,23 +103,6 @@ type FlatRatingResult = {
 [<AbstractClass; Sealed>]
 type FlatRating private () =
 
-    static member private Condition(altitude: float<m>, mach: float, temperature: float, humidity: float) =
-        let flight = FlightCondition.AtTemperature(float altitude, mach, temperature)
-
-        if humidity > 0.0 then
-            flight.WithRelativeHumidity humidity
-        else
-            flight
-
-    static member private Inputs(model: EngineModel, flight: FlightCondition, loads: Action<float[]> | null) =
-        let inputs = model.Inputs(&flight)
-
-        match loads with
-        | null -> ()
-        | act -> act.Invoke inputs
-
-        inputs
-
     static member private Row
         (
             model: EngineModel,
@@ -130,22 +113,16 @@ type FlatRating private () =
             humidity: float,
             loads: Action<float[]> | null
         ) =
-        let flight = FlatRating.Condition(altitude, mach, float temperature, humidity)
+        let flight = StudyPoints.flight altitude mach temperature humidity
         let isa = flight.IsaOffset * 1.0<K>
 
         try
-            let point = model.AtRating(&flight, rating, FlatRating.Inputs(model, flight, loads))
-
-            let governing =
-                if point.Setting.Quantity = Quantity.NetThrust then
-                    "flat"
-                else
-                    QuantityText.Name point.Setting.Quantity
+            let point = model.AtRating(&flight, rating, StudyPoints.inputs model flight loads)
 
             {
                 OutsideTemperature = temperature
                 IsaOffset = isa
-                Governing = governing
+                Governing = StudyPoints.governing point
                 Point = point
                 Reason = ""
             }
@@ -187,8 +164,8 @@ type FlatRating private () =
 
         // Humidity goes with temperature: the break is found for the humidity of the temperature last guessed.
         let rec findBreak guess rounds =
-            let corner = FlatRating.Condition(altitude, mach, guess, relativeHumidity)
-            let inputs = FlatRating.Inputs(model, corner, loads)
+            let corner = StudyPoints.flight altitude mach (guess * 1.0<K>) relativeHumidity
+            let inputs = StudyPoints.inputs model corner loads
             let mutable temperature = 0.0
             let mutable governing = -1
             let outcome = rating.Break(inputs, flat, &temperature, &governing)

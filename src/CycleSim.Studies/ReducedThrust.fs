@@ -117,8 +117,7 @@ type private Runway = {
 } with
 
     member runway.At(temperature: float) =
-        let f = runway.Flight
-        FlightCondition.AtTemperature(f.PressureAltitude, f.Mach, temperature, f.WaterAirRatio)
+        StudyPoints.atTemperature runway.Flight temperature
 
     /// Nothing is reduced up to here.
     member runway.Start = max runway.Break runway.Flight.StaticTemperature
@@ -160,12 +159,6 @@ type ReducedThrust private () =
         "an assumed-temperature setting is no limit: full thrust may be set at any time; a derate is a limit of the take-off"
     |]
 
-    static member private Governing(point: OperatingPoint) =
-        if point.Setting.Quantity = Quantity.NetThrust then
-            "flat"
-        else
-            QuantityText.Name point.Setting.Quantity
-
     static member private Open
         (model: EngineModel, ratingName: string, flight: FlightCondition, derate: float, taken: Action<float[]> | null)
         : Runway =
@@ -179,15 +172,7 @@ type ReducedThrust private () =
 
         let rating = model.Rating ratingName
 
-        let inputsAt (flight: FlightCondition) =
-            let inputs = model.Inputs(&flight)
-
-            match taken with
-            | null -> ()
-            | act -> act.Invoke inputs
-
-            inputs
-
+        let inputsAt flight = StudyPoints.inputs model flight taken
         let rated = model.AtRating(&flight, rating, inputsAt flight)
         let flat = rating.FlatThrust(flight.PressureAltitude, flight.Mach)
         let mutable temperature = 0.0
@@ -279,7 +264,8 @@ type ReducedThrust private () =
             NoSolutionException(
                 $"{reason} The largest reduction allowed here is {percent largest.ReductionFromBasis}, to "
                 + $"{newtons (float largest.NetThrust)}, with an assumed temperature of "
-                + $"{kelvin (float largest.AssumedTemperature)}; what ends it: {endedBy}."
+                + $"{kelvin (float largest.AssumedTemperature)}; what ends it: {endedBy}. "
+                + "Engineering study; not for dispatch or flight: the approved manual decides."
             )
         )
 
@@ -290,7 +276,7 @@ type ReducedThrust private () =
             Engine = runway.Model.Engine.Definition.Name
             Rating = runway.RatingUsed.Definition.Name
             Rated = runway.Rated
-            Governing = ReducedThrust.Governing runway.Rated
+            Governing = StudyPoints.governing runway.Rated
             BreakTemperature = runway.Break * 1.0<K>
             Derate = runway.Derate
             Basis = runway.Basis

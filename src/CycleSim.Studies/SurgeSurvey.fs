@@ -178,14 +178,7 @@ type SurgeSurvey private () =
         let without = List<string>()
         let points = List<OperatingPoint * float>()
 
-        let inputsAt (flight: FlightCondition) =
-            let inputs = model.Inputs(&flight)
-
-            match loads with
-            | null -> ()
-            | act -> act.Invoke inputs
-
-            inputs
+        let inputsAt flight = StudyPoints.inputs model flight loads
 
         for flight in SurgeSurvey.Conditions() do
             try

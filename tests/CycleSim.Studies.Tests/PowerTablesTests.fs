@@ -71,7 +71,7 @@ let private point (cell: PowerCell) =
 let private run (corner: Corner) =
     let setAt = corner.Speed * 1.0<m / s>
 
-    PowerTables.TakeOffRun(
+    TakeOffRun.Run(
         model.Value,
         "take-off",
         corner.Altitude * 1.0<m>,
@@ -223,15 +223,7 @@ let tests =
 
             Expect.throwsT<ArgumentException>
                 (fun () ->
-                    PowerTables.TakeOffRun(
-                        model.Value,
-                        "take-off",
-                        0.0<m>,
-                        288.15<K>,
-                        50.0<m / s>,
-                        40.0<m / s>,
-                        10.0<m / s>
-                    )
+                    TakeOffRun.Run(model.Value, "take-off", 0.0<m>, 288.15<K>, 50.0<m / s>, 40.0<m / s>, 10.0<m / s>)
                     |> ignore)
                 "held to less than set at")
 
