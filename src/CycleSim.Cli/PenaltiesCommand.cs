@@ -237,6 +237,11 @@ internal static class PenaltiesCommand
             ),
             left: 2
         );
+        foreach (var need in s.Ranking.GroupBy(r => (r.Need, Power: r.Kind == LoadKind.Power)))
+            if (need.MaxBy(r => r.NetThrust) is { } atLimit && atLimit != need.First())
+                Layout.Line(
+                    $"{need.Key.Need}: {need.First().Source} costs the least fuel, {atLimit.Source} the least thrust at the limit."
+                );
     }
 
     private static IEnumerable<string> Reasons(PenaltiesResult s, Display d)
