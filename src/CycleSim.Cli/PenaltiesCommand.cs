@@ -22,6 +22,10 @@ internal static class PenaltiesCommand
             "--thrust",
             "Net thrust held in the first half, for instance \"22 kN\"; that of the rating without it."
         );
+        var pressure = CommonOptions.Text(
+            "--least-pressure",
+            "Total pressure that air must have at its port to serve a need, for instance \"250 kPa\"; any without it."
+        );
         var command = new Command(
             "penalties",
             """
@@ -33,12 +37,13 @@ internal static class PenaltiesCommand
               cyclesim penalties velda-27 --altitude "35000 ft" --mach 0.78 --rating max-cruise --thrust "22 kN" \
                 --load "packs: customer-bleed=0.6 kg/s" --load "wing anti-ice: customer-bleed=1 %" --load "electrical: high=90 kW"
               cyclesim penalties velda-27 --altitude "15000 ft" --mach 0.5 --rating max-climb --load "nacelle: nacelle-anti-ice=open"
-              cyclesim penalties torvik-75 --altitude "0 m" --load "packs: customer-bleed=2 kg/s, high=50 kW" --csv penalties.csv
+              cyclesim penalties torvik-75 --altitude "0 m" --load "packs: customer-bleed=2 kg/s, high=50 kW" --least-pressure "250 kPa"
             """
         )
         {
             rating,
             thrust,
+            pressure,
             load.Option,
             common.Csv,
             common.Parquet,
@@ -56,7 +61,8 @@ internal static class PenaltiesCommand
                 CommonOptions.RatingOf(result, rating, loaded),
                 loads,
                 Thrust(result, thrust),
-                common.Loads(result, model.Engine)
+                common.Loads(result, model.Engine),
+                CommonOptions.Quantity(result, pressure, Dimension.Pressure, "0 Pa")
             );
             Exports.Write(result, common, study.Table(Exports.Provenance(result, loaded)));
             if (result.GetValue(common.Json))
@@ -219,6 +225,7 @@ internal static class PenaltiesCommand
                 $"break {d.DifferenceUnit}",
                 $"supply {d.PressureUnit}",
                 $"supply {d.TemperatureUnit}",
+                "",
             ],
             s.Ranking.Select(r =>
                 new[]
@@ -233,12 +240,13 @@ internal static class PenaltiesCommand
                     d.SignedDifference(r.Break, 3),
                     d.Pressure(r.SupplyPressure),
                     double.IsNaN(r.SupplyTemperature) ? "-" : d.Temperature(r.SupplyTemperature),
+                    r.Reason,
                 }
             ),
             left: 2
         );
         foreach (var need in s.Ranking.GroupBy(r => (r.Need, Power: r.Kind == LoadKind.Power)))
-            if (need.MaxBy(r => r.NetThrust) is { } atLimit && atLimit != need.First())
+            if (need.Where(r => r.Reason.Length == 0).MaxBy(r => r.NetThrust) is { } atLimit && atLimit != need.First())
                 Layout.Line(
                     $"{need.Key.Need}: {need.First().Source} costs the least fuel, {atLimit.Source} the least thrust at the limit."
                 );

@@ -2,6 +2,7 @@ namespace CycleSim.Studies
 
 open System
 open System.Collections.Generic
+open System.Globalization
 open System.Runtime.InteropServices
 open CycleSim.Air
 open CycleSim.Engine
@@ -192,6 +193,7 @@ type Penalties private () =
     /// <param name="loads">the user's loads; none where null</param>
     /// <param name="thrust">net thrust held, N; that of the rating where zero</param>
     /// <param name="taken">changes bleeds, offtakes or health before any load is added; nothing where null</param>
+    /// <param name="leastPressure">total pressure, Pa, that the air of a need must have at its port; 0 leaves it open</param>
     /// <exception cref="T:CycleSim.Studies.LoadException">A load of nothing, or from a port or spool that is not there.</exception>
     /// <exception cref="T:CycleSim.Matching.RatingException">No such rating, or one that cannot be worked out.</exception>
     /// <exception cref="T:CycleSim.Reports.NoSolutionException">No point without the loads.</exception>
@@ -203,7 +205,8 @@ type Penalties private () =
             [<Optional; DefaultParameterValue(null: IReadOnlyList<NamedLoad> | null)>] loads:
                 IReadOnlyList<NamedLoad> | null,
             [<Optional; DefaultParameterValue(0.0<N>)>] thrust: float<N>,
-            [<Optional; DefaultParameterValue(null: Action<float[]> | null)>] taken: Action<float[]> | null
+            [<Optional; DefaultParameterValue(null: Action<float[]> | null)>] taken: Action<float[]> | null,
+            [<Optional; DefaultParameterValue(0.0<Pa>)>] leastPressure: float<Pa>
         ) : PenaltiesResult =
         let loads =
             match loads with
@@ -238,7 +241,7 @@ type Penalties private () =
             SumAtThrust = sum _.AtThrust.Full
             SumAtLimit = sum _.AtLimit.Full
             SumBreak = single |> Array.sumBy _.Break
-            Ranking = Penalties.Rank(case, perUnit, loads)
+            Ranking = Penalties.Rank(case, perUnit, loads, float leastPressure)
         }
 
     static member private PerUnit(case: PenaltyCase) : Penalty[] =
@@ -255,7 +258,9 @@ type Penalties private () =
 
     /// Each need from every source that could serve it. Air that an aircraft uses goes overboard, and from ports that stand
     /// open: what a schedule shuts cannot be counted on.
-    static member private Rank(case: PenaltyCase, perUnit: Penalty[], loads: NamedLoad[]) : IReadOnlyList<Service> =
+    static member private Rank
+        (case: PenaltyCase, perUnit: Penalty[], loads: NamedLoad[], leastPressure: float)
+        : IReadOnlyList<Service> =
         let ports =
             case.Engine.Ports
             |> Array.filter (fun p -> p.Port.To = AirDestination.Overboard && not p.Port.Scheduled)
@@ -281,12 +286,20 @@ type Penalties private () =
                 Break = breakChange penalty
                 SupplyPressure = pressure * 1.0<Pa>
                 SupplyTemperature = temperature * 1.0<K>
-                Reason = reason penalty
+                Reason =
+                    if pressure < leastPressure then
+                        String.Format(
+                            CultureInfo.InvariantCulture,
+                            "air of {0:F1} kPa where {1:F1} kPa are needed",
+                            pressure / 1000.0,
+                            leastPressure / 1000.0
+                        )
+                    else
+                        reason penalty
             }
 
         let cheapestFirst (services: Service[]) =
-            services
-            |> Array.sortBy (fun s -> if Double.IsNaN s.Sfc then infinity else s.Sfc)
+            services |> Array.sortBy (fun s -> (if s.Reason = "" then 0 else 1), s.Sfc)
 
         let units kind need = [|
             for p in perUnit do

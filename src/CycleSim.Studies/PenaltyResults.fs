@@ -147,7 +147,7 @@ type PenaltiesResult = {
     SumAtThrust: PenaltyEffects
     SumAtLimit: PenaltyEffects
     SumBreak: float<K>
-    /// Each need from every source that could serve it, cheapest first.
+    /// Each need from every source, cheapest first and those that cannot serve it last.
     Ranking: IReadOnlyList<Service>
 } with
 

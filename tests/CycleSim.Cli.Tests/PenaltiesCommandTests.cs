@@ -84,6 +84,7 @@ public class PenaltiesCommandTests
     [InlineData(2, "neither air", "--load", "packs: customer-bleed=3 K")]
     [InlineData(2, "not of the form", "--load", "customer-bleed=1 kg/s")]
     [InlineData(2, "two loads are called 'a'", "--load", "a: high=1 kW", "--load", "a: high=2 kW")]
+    [InlineData(2, "a pressure", "--least-pressure", "250 K")]
     [InlineData(2, "above zero", "--thrust", "0 kN")]
     [InlineData(3, "it has 'take-off'", "--rating", "cruise")]
     [InlineData(4, "cannot be reached", "--thrust", "900 kN")]

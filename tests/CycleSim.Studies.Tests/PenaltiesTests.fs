@@ -207,6 +207,23 @@ let tests =
             Expect.isLessThan middle.Sfc high.Sfc "fuel"
             Expect.isLessThan middle.SupplyPressure high.SupplyPressure "pressure")
 
+        testCase "a source short of pressure ranks last and says so" (fun () ->
+            let torvik = EngineModel((EngineLibrary.Load "torvik-75").Engine)
+            let flight = FlightCondition.AtIsaOffset(0.0, 0.0, 15.0)
+            let items = [| LoadItem.Air("customer-bleed", 2.0<kg / s>) |]
+
+            let packs least =
+                Penalties.Run(torvik, flight, "take-off", [| load "packs" items |], leastPressure = least).Ranking
+                |> Seq.filter (fun s -> s.Need = "packs")
+                |> Seq.toList
+
+            // Fan air is about the cheapest there is, at a fan's pressure.
+            Expect.equal (packs 0.0<Pa>).Head.Source "precooler-air" "any pressure"
+            let pressed = packs 250e3<Pa>
+            Expect.equal pressed.Head.Source "ipc-bleed" "250 kPa"
+            Expect.equal (List.last pressed).Source "precooler-air" "last"
+            Expect.stringContains (List.last pressed).Reason "250.0 kPa are needed" "reason")
+
         // Ranges from memory, low confidence: SFC 1 to 2 % per 1 % bleed at constant thrust.
         // Half-way ports lie at the lower end of it: take delivery air for the check.
         testCase "per cent of delivery air against the usual rule" (fun () ->
