@@ -36,6 +36,13 @@ type NotebookDisplay private () =
         NotebookDisplay.Show<Rating> StudySheets.ofRating
         NotebookDisplay.Show<FlatRatingResult> StudySheets.ofFlatRating
         NotebookDisplay.Show<SurgeSurveyResult> StudySheets.ofSurgeSurvey
+        NotebookDisplay.Show<RequiredRating> StudySheets.ofRequiredRating
+        NotebookDisplay.Show<BreakEffect seq> StudySheets.ofBreakEffects
+        NotebookDisplay.Show<PenaltiesResult> StudySheets.ofPenalties
+        NotebookDisplay.Show<RatingMap>(fun map -> StudySheets.ofTable (map.Table [||]))
+        NotebookDisplay.Show<ManoeuvreResult>(fun result -> StudySheets.ofTable (result.Table [||]))
+        NotebookDisplay.Show<PowerTablesResult>(fun result -> StudySheets.ofTable (result.Table [||]))
+        NotebookDisplay.Show<TakeOffRunResult>(fun result -> StudySheets.ofTable (result.Table [||]))
         NotebookDisplay.Show<Influence> StudySheets.ofInfluence
         NotebookDisplay.Show<StudyTable> StudySheets.ofTable
         NotebookDisplay.Show<GenericChart>(ChartDisplay.html, ChartDisplay.text)

@@ -9,6 +9,8 @@ module internal PointSheets =
         Facts [
             "net thrust",
             $"{Figures.force p.NetThrust} kN (gross {Figures.force p.GrossThrust}, ram drag {Figures.force p.RamDrag})"
+            if p.InstalledThrust <> p.NetThrust then
+                "installed thrust", $"{Figures.force p.InstalledThrust} kN, net of nacelle drag and scrubbing"
             "fuel flow", $"{Figures.fuelFlow p.FuelFlow} kg/s (fuel-air ratio {Figures.decimals 5 p.FuelAirRatio})"
             "SFC", $"{Figures.sfc p.Sfc} g/(kN s)"
             "bypass ratio", Figures.decimals 3 p.BypassRatio

@@ -58,6 +58,10 @@ module internal Figures =
     let pressure pascals = decimals 2 (pascals / 1e3)
     let power watts = decimals 1 (watts / 1e3)
     let percent digits share = decimals digits (share * 100.0)
+
+    let signedPercent share =
+        written "+0.00;-0.00;0.00" (share * 100.0)
+
     let offset kelvin = written "+0.0;-0.0;0.0" kelvin
     let yesNo value = if value then "yes" else "no"
 

@@ -148,6 +148,143 @@ module internal StudySheets =
         ]
     }
 
+    let ofRequiredRating (r: RequiredRating) =
+        let orReason value reason =
+            if Double.IsNaN value then
+                Figures.none + $" ({reason})"
+            else
+                $"ISA {Figures.offset value} K"
+
+        {
+            Title =
+                $"{r.Engine}: what rating {r.Rating} would have to be for {Figures.force (float r.Wanted)} kN at "
+                + $"{Figures.decimals 0 (float r.PressureAltitude)} m, Mach {Figures.decimals 3 r.Mach}, {Figures.celsius (float r.OutsideTemperature)} °C"
+            Parts = [
+                Facts [
+                    "rated thrust there now", $"{Figures.force (float r.Rated)} kN, held by {r.Governing}"
+                    "hottest day with the wanted thrust now",
+                    if Double.IsNaN(float r.HottestNow) then
+                        Figures.none + $" ({r.HottestReason})"
+                    else
+                        $"{Figures.celsius (float r.HottestNow)} °C"
+                    "flat to, now", $"ISA {Figures.offset (float r.FlatToNow)} K"
+                    "flat to, needed", orReason (float r.FlatToNeeded) r.FlatToReason
+                    "sea-level thrust, now", $"{Figures.force (float r.SeaLevelThrustNow)} kN"
+                    "sea-level thrust, needed", $"{Figures.force (float r.SeaLevelThrustNeeded)} kN"
+                ]
+                Grid {
+                    Title = "Limits at the wanted thrust"
+                    TextColumns = 1
+                    Columns = [ "limit"; "needed"; "exceeded" ]
+                    Rows = [
+                        for l in r.Limits ->
+                            [
+                                Figures.limit l.Limit
+                                QuantityText.Format(l.Limit.Quantity, l.Needed)
+                                Figures.yesNo l.Exceeded
+                            ]
+                    ]
+                }
+                Sheet.caution
+            ]
+        }
+
+    let ofBreakEffects (effects: BreakEffect seq) = {
+        Title = "What moves the break, each load alone, flat thrust held"
+        Parts = [
+            Grid {
+                Title = ""
+                TextColumns = 1
+                Columns = [ "load"; "break °C"; "shift K"; "thrust at the break without it kN" ]
+                Rows = [
+                    for e in effects ->
+                        [
+                            e.Load
+                            Figures.celsius (float e.BreakTemperature)
+                            Figures.offset (float e.Shift)
+                            Figures.force (float e.ThrustThere)
+                        ]
+                ]
+            }
+            Sheet.caution
+        ]
+    }
+
+    let private penalty (p: Penalty) = [
+        p.Name
+        Figures.signedPercent p.AtThrust.Full.FuelFlow
+        Figures.offset (float p.AtThrust.Full.T41)
+        Figures.offset (float p.AtThrust.Full.T45)
+        Figures.signedPercent p.AtLimit.Full.NetThrust
+        Figures.signedPercent p.AtLimit.FirstOrder.NetThrust
+        Figures.offset (float p.Break)
+    ]
+
+    let private penalties title (rows: Penalty seq) = {
+        Title = title
+        TextColumns = 1
+        Columns = [
+            ""
+            "fuel at thrust %"
+            "T41 at thrust K"
+            "T45 at thrust K"
+            "thrust at limit %"
+            "the same, first order %"
+            "break K"
+        ]
+        Rows = rows |> Seq.map penalty |> Seq.toList
+    }
+
+    let private service (s: Service) = [
+        s.Need
+        s.Source
+        (match s.Kind with
+         | LoadKind.Power -> $"{Figures.power s.Amount} kW"
+         | _ -> $"{Figures.flow s.Amount} kg/s")
+        Figures.pressure (float s.SupplyPressure)
+        Figures.temperature (float s.SupplyTemperature)
+        Figures.signedPercent s.Sfc
+        Figures.signedPercent s.NetThrust
+        (if s.Reason = "" then Figures.none else s.Reason)
+    ]
+
+    let ofPenalties (p: PenaltiesResult) = {
+        Title =
+            $"{p.Engine}, rating {p.Rating}: bleed and power penalties at {Figures.decimals 0 p.AtThrust.Flight.PressureAltitude} m, Mach {Figures.decimals 3 p.AtThrust.Flight.Mach}"
+        Parts = [
+            Facts [
+                "net thrust held", $"{Figures.force p.AtThrust.NetThrust} kN"
+                "limit held",
+                Figures.limit p.Limit
+                + (if p.LimitHeldAtBreak then
+                       " at the break, for the rating is flat here"
+                   else
+                       "")
+                "break temperature without the loads",
+                $"{Figures.celsius (float p.BreakTemperature)} °C, where {Figures.limit p.BreakLimit}"
+            ]
+            if p.Loads.Count > 0 then
+                Grid(penalties "Loads, solved anew" [ yield! p.Loads; p.Together ])
+            FoldedGrid(penalties "One per cent or one kg/s of every port, one kW of every spool" p.PerUnit)
+            Grid {
+                Title = "Each need from every source that could serve it, cheapest first"
+                TextColumns = 3
+                Columns = [
+                    "need"
+                    "source"
+                    "amount"
+                    "supply kPa"
+                    "supply K"
+                    "SFC %"
+                    "thrust at limit %"
+                    "why not"
+                ]
+                Rows = p.Ranking |> Seq.map service |> Seq.toList
+            }
+            Sheet.caution
+        ]
+    }
+
     let ofInfluence (influence: Influence) = {
         Title = "Influence coefficients: exact derivatives with the power setting held, SI over SI"
         Parts = [
