@@ -28,6 +28,7 @@ var root = new RootCommand(
       cyclesim throttle velda-27 --altitude "35000 ft" --mach 0.78 --rating max-cruise
       cyclesim tables velda-27 --rating max-climb --csv climb.csv
       cyclesim reduced-thrust velda-27 --altitude "0 ft" --temperature "20 °C" --wanted-thrust "100 kN"
+      cyclesim report velda-27
       cyclesim point my-engine.toml --altitude "0 m" --mach 0 --thrust "100 kN" --json
 
     Exit codes: 0 done, 2 command line not understood, 3 definition file refused, 4 no solution, 130 stopped, 1 anything else.
@@ -50,6 +51,7 @@ var root = new RootCommand(
     ThrottleCommand.Create(),
     TablesCommand.Create(),
     ReducedThrustCommand.Create(),
+    ReportCommand.Create(),
 };
 
 var parsed = root.Parse(args);

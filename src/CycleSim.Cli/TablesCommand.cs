@@ -20,7 +20,10 @@ internal static class TablesCommand
         {
             Description = "Corrected thrust and fuel flow over Mach and corrected N1 instead of a rating.",
         };
-        var altitudes = CommonOptions.Text("--altitudes", "Pressure altitudes; 0 ft to 40000 ft by 5000 ft without it.");
+        var altitudes = CommonOptions.Text(
+            "--altitudes",
+            "Pressure altitudes; 0 ft to 40000 ft by 5000 ft without it."
+        );
         var machs = CommonOptions.Text("--machs", "Mach numbers; 0 to 0.8 by 0.1 without it.");
         var offsets = CommonOptions.Text("--isa-offsets", "Offsets from standard; -20 K to 20 K by 10 K without it.");
         var speeds = CommonOptions.Text(

@@ -7,7 +7,8 @@ namespace CycleSim.Definitions;
 /// <summary>An engine as read, with what tells one definition from another.</summary>
 /// <param name="Source">file name, or the name of a shipped engine</param>
 /// <param name="Hash">SHA-256 of the text, hexadecimal</param>
-public sealed record LoadedDefinition(EngineDefinition Engine, string Source, string Hash);
+/// <param name="Text">the definition as it was read</param>
+public sealed record LoadedDefinition(EngineDefinition Engine, string Source, string Hash, string Text);
 
 /// <summary>Reads definition files: TOML with units in the text; every key is described in REFERENCE.md.</summary>
 public static class DefinitionFile
@@ -58,7 +59,8 @@ public static class DefinitionFile
         return new LoadedDefinition(
             engine,
             source,
-            Convert.ToHexStringLower(SHA256.HashData(Encoding.UTF8.GetBytes(text)))
+            Convert.ToHexStringLower(SHA256.HashData(Encoding.UTF8.GetBytes(text))),
+            text
         );
     }
 

@@ -109,7 +109,14 @@ type PerformanceTables private () =
         (column: string, against: string, read: float[], fresh: float[], scale: float -> float, where: int -> string)
         : TableError =
         let differences =
-            Array.map2 (fun r f -> if Double.IsFinite r && Double.IsFinite f then abs (r - f) / scale f else nan) read fresh
+            Array.map2
+                (fun r f ->
+                    if Double.IsFinite r && Double.IsFinite f then
+                        abs (r - f) / scale f
+                    else
+                        nan)
+                read
+                fresh
 
         let known =
             [| 0 .. differences.Length - 1 |]
@@ -198,7 +205,8 @@ type PerformanceTables private () =
         |]
 
         let run axes =
-            let levels = axes |> Array.map (fun (input, values) -> SweepLevel.Over(input, values))
+            let levels =
+                axes |> Array.map (fun (input, values) -> SweepLevel.Over(input, values))
 
             let plan =
                 SweepPlan.Of(
@@ -215,7 +223,8 @@ type PerformanceTables private () =
         let result = run axes
 
         let middles =
-            axes |> Array.map (fun (input, values) -> input, PerformanceTables.Middles values)
+            axes
+            |> Array.map (fun (input, values) -> input, PerformanceTables.Middles values)
 
         let fresh = run middles
         let lengths = axes |> Array.map (fun (_, values) -> values.Length)
@@ -237,11 +246,9 @@ type PerformanceTables private () =
             Engine = engine.Definition.Name
             Title = $"Thrust and fuel flow of {engine.Definition.Name} at rating {rating}"
             Axes = axes |> Array.map (fun (input, values) -> KeyValuePair(input.Name, values))
-            Columns =
-                result.Columns
-                |> Seq.filter (fun c -> c.Name <> "rating")
-                |> Seq.toArray
-            Basis = "net thrust without installation drag, dry air; errors: linear along each axis against fresh solutions, over the fresh value"
+            Columns = result.Columns |> Seq.filter (fun c -> c.Name <> "rating") |> Seq.toArray
+            Basis =
+                "net thrust without installation drag, dry air; errors: linear along each axis against fresh solutions, over the fresh value"
             Errors = errors
             WithoutSolution = result.Summary.Points - result.Summary.Solved
         }
@@ -298,7 +305,8 @@ type PerformanceTables private () =
                 StandardAtmosphere.Pressure(float height) / StandardAtmosphere.SeaLevelPressure
 
             let theta =
-                StandardAtmosphere.Temperature(float height) / StandardAtmosphere.SeaLevelTemperature
+                StandardAtmosphere.Temperature(float height)
+                / StandardAtmosphere.SeaLevelTemperature
 
             let corrected name scale =
                 PerformanceTables.Numbers(result, name) |> Array.map (fun v -> v / scale)
@@ -307,7 +315,10 @@ type PerformanceTables private () =
 
         let thrustName, fuelName = "corrected_net_thrust_N", "corrected_fuel_flow_kg_per_s"
         let result, thrust, fuel = run altitude machs speeds
-        let middleMachs, middleSpeeds = PerformanceTables.Middles machs, PerformanceTables.Middles speeds
+
+        let middleMachs, middleSpeeds =
+            PerformanceTables.Middles machs, PerformanceTables.Middles speeds
+
         let _, freshThrust, freshFuel = run altitude middleMachs middleSpeeds
         let lengths = [| machs.Length; speeds.Length |]
 
@@ -321,8 +332,7 @@ type PerformanceTables private () =
                 read,
                 fresh,
                 (fun _ -> largest whole),
-                fun index ->
-                    PerformanceTables.Place([| "mach", machs; "corrected_N1_relative_speed", speeds |], index)
+                fun index -> PerformanceTables.Place([| "mach", machs; "corrected_N1_relative_speed", speeds |], index)
             )
 
         let middle name (values: float[]) fresh =

@@ -1,0 +1,445 @@
+namespace CycleSim.Charts
+
+open System
+open System.Collections.Generic
+open System.Runtime.InteropServices
+open CycleSim.Air
+open CycleSim.Engine
+open CycleSim.Reports
+open CycleSim.Studies
+open FSharp.Data.UnitSystems.SI.UnitSymbols
+
+/// Where the engine of a report comes from.
+type ReportSource = {
+    /// Text of the definition.
+    Text: string
+    /// What it takes to find the numbers again: definition, its hash, program version, command line.
+    Provenance: IReadOnlyList<KeyValuePair<string, string>>
+    /// The caution that stands first and last.
+    Caution: string
+}
+
+/// One file about an engine that is read with no network: definition, design point, ratings, envelope, margins, penalties.
+[<AbstractClass; Sealed>]
+type EngineReport private () =
+
+    static let number digits (value: float) = ChartUnits.Text(value, digits)
+    static let percent digits (value: float) = ChartUnits.Text(100.0 * value, digits)
+
+    static member private Definition(page: ReportPage, engine: SizedEngine, units: ChartUnits, source: ReportSource) =
+        let d = engine.Definition
+        page.Section "Definition"
+        let flight = d.Design.Flight
+
+        page.Facts [
+            "design point",
+            $"{units.AltitudeText flight.PressureAltitude}, Mach {flight.Mach:F2}, ISA {flight.IsaOffset:F0} K, {number 1 (units.Flow engine.DesignMassFlow)} {units.FlowUnit} of air, T4 {units.TemperatureText engine.DesignT4}"
+            if engine.HasFan then
+                "bypass ratio", number 2 d.Design.BypassRatio
+            "net thrust there", units.ThrustText engine.DesignThrust
+            "exhaust",
+            (if not engine.HasFan then "one jet"
+             elif isNull d.Mixer then "separate jets"
+             else "mixed")
+        ]
+
+        page.Table(
+            "Compressors at the design point",
+            2,
+            [ "name"; "spool"; "pressure ratio"; "map" ],
+            [
+                match d.Fan with
+                | null -> ()
+                | fan -> [ "fan"; fan.Spool; number 3 fan.PressureRatio; "general shape" ]
+
+                for c in d.Compressors do
+                    [
+                        c.Name
+                        c.Spool
+                        number 3 c.PressureRatio
+                        (if c.StageWork.Count > 0 then
+                             $"{c.StageWork.Count} stages stacked"
+                         elif isNull c.Map then
+                             "general shape"
+                         else
+                             "own table")
+                    ]
+            ]
+        )
+
+        if d.AirPorts.Count > 0 then
+            page.Table(
+                "Air taken",
+                3,
+                [ "port"; "from"; "to"; "share %"; $"flow {units.FlowUnit}"; "normally" ],
+                [
+                    for p in d.AirPorts do
+                        [
+                            p.Name
+                            p.From
+                            (match p.To with
+                             | AirDestination.Overboard -> "overboard"
+                             | AirDestination.BypassDuct -> "bypass duct"
+                             | AirDestination.Vane -> $"{p.Turbine} vane"
+                             | _ -> $"{p.Turbine} rotor")
+                            percent 2 p.Fraction
+                            number 2 (units.Flow p.Flow)
+                            (if p.NormallyShut then
+                                 "shut"
+                             elif p.Scheduled then
+                                 $"open below {percent 0 p.OpenBelow} %% speed"
+                             else
+                                 "open")
+                        ]
+                ]
+            )
+
+        page.Text("The definition as it was read", source.Text)
+
+    static member private Design(page: ReportPage, model: EngineModel, units: ChartUnits) =
+        page.Section "Design point"
+        let p = model.DesignPoint()
+
+        page.Facts [
+            "net thrust", units.ThrustText p.NetThrust
+            "installed thrust", units.ThrustText p.InstalledThrust
+            "fuel flow", $"{number 4 (units.FuelFlow p.FuelFlow)} {units.FuelFlowUnit}"
+            "SFC", units.SfcText p.Sfc
+            "overall pressure ratio P3/P2", number 2 p.OverallPressureRatio
+            "EPR P5/P2", number 4 p.EnginePressureRatio
+            "thermal, propulsive, overall efficiency",
+            $"{percent 1 p.ThermalEfficiency}, {percent 1 p.PropulsiveEfficiency}, {percent 1 p.OverallEfficiency} %%"
+            "audit", $"mass and energy close to {p.Audit.LargestImbalance:E1}, equations to {p.Outcome.Residual:E1}"
+        ]
+
+        page.Table(
+            "Stations (SAE AS755), total states",
+            2,
+            [
+                "station"
+                "plane"
+                $"W {units.FlowUnit}"
+                $"Tt {units.TemperatureUnit}"
+                $"Pt {units.PressureUnit}"
+                "fuel-air ratio"
+            ],
+            [
+                for s in p.Stations do
+                    [
+                        s.Number
+                        s.Plane
+                        number 2 (units.Flow s.MassFlow)
+                        number 1 (units.Temperature s.TotalTemperature)
+                        number 2 (units.Pressure s.TotalPressure)
+                        number 5 s.FuelAirRatio
+                    ]
+            ]
+        )
+
+        page.Chart(PointCharts.StationProfile(p, units))
+        page.Chart(PointCharts.TemperatureEntropy(p, units))
+
+        page.Chart(
+            LossCharts.Waterfall(
+                "From gross to installed thrust",
+                {
+                    Name = "gross thrust"
+                    Amount = units.Thrust p.GrossThrust
+                },
+                [|
+                    {
+                        Name = "ram drag"
+                        Amount = -units.Thrust p.RamDrag
+                    }
+                    {
+                        Name = "nacelle"
+                        Amount = units.Thrust p.InstalledThrust - units.Thrust p.NetThrust
+                    }
+                |],
+                "installed thrust",
+                units.ThrustUnit
+            )
+        )
+
+    // A rating with a thrust of its own is one of the ground; the others are shown where the engine was designed to fly.
+    static member private Places(model: EngineModel, rating: RatingDefinition) : struct (float * float)[] =
+        let design = model.Engine.Definition.Design.Flight
+
+        if rating.Thrust > 0.0 then
+            [| for feet in [ 0.0; 2000.0; 5000.0; 8000.0 ] -> struct (feet * 0.3048, 0.0) |]
+        else
+            [|
+                for less in [ 3000.0; 1500.0; 0.0 ] -> struct (max 0.0 (design.PressureAltitude - less), design.Mach)
+            |]
+
+    static member private Rating(page: ReportPage, model: EngineModel, rating: RatingDefinition, units: ChartUnits) =
+        page.Heading $"Rating {rating.Name}"
+
+        page.Attempt(fun () ->
+            let results = [|
+                for struct (altitude, mach) in EngineReport.Places(model, rating) do
+                    FlatRating.Run(model, rating.Name, altitude * 1.0<m>, mach)
+            |]
+
+            page.Words(
+                "Limits: "
+                + (results[0].Limits |> Seq.map units.LimitText |> String.concat "; ")
+                + $". Flat to ISA {number 1 (float results[0].FlatTo)} K."
+            )
+
+            page.Chart(RatingCharts.FlatRating(results, units))
+
+            page.Table(
+                "",
+                1,
+                [
+                    $"altitude {units.AltitudeUnit}"
+                    "Mach"
+                    $"flat thrust {units.ThrustUnit}"
+                    $"break {units.TemperatureUnit}"
+                    "ISA K"
+                    "limit there"
+                    "lapse %/K"
+                ],
+                [
+                    for r in results do
+                        [
+                            number 0 (units.Altitude(float r.PressureAltitude))
+                            number 2 r.Mach
+                            number 2 (units.Thrust(float r.FlatThrust))
+                            number 1 (units.Temperature(float r.BreakTemperature))
+                            number 1 (float r.BreakIsaOffset)
+                            QuantityText.Name r.BreakLimit.Quantity
+                            percent 2 (float r.LapsePerKelvin)
+                        ]
+                ]
+            ))
+
+    static member private Envelope(page: ReportPage, model: EngineModel, rating: string, units: ChartUnits) =
+        page.Section "Envelope"
+
+        page.Attempt(fun () ->
+            let design = model.Engine.Definition.Design.Flight
+            let ceiling = max 12500.0 design.PressureAltitude
+            let altitudes = [| for k in 0..10 -> ceiling * float k / 10.0 |]
+            let machs = [| for k in 0..9 -> max 0.9 design.Mach * float k / 9.0 |]
+            let known = model.Rating rating
+
+            let points =
+                Array2D.init altitudes.Length machs.Length (fun i j ->
+                    let flight = FlightCondition.AtIsaOffset(altitudes[i], machs[j], 0.0)
+
+                    try
+                        model.AtRating(&flight, known)
+                    with
+                    | :? NoSolutionException
+                    | :? CycleSim.Matching.RatingException -> Unchecked.defaultof<OperatingPoint>)
+
+            page.Words
+                $"Rating {rating} at standard temperature over the whole range of altitude and Mach number, also where the aeroplane would not fly it."
+
+            for quantity, name in
+                [
+                    EnvelopeQuantity.NetThrust, "net thrust"
+                    EnvelopeQuantity.Sfc, "SFC"
+                    EnvelopeQuantity.SurgeMargin, "smallest surge margin"
+                ] do
+                page.Chart(
+                    EnvelopeCharts.Map($"Rating {rating}, ISA: {name}", quantity, altitudes, machs, points, units)
+                )
+
+            page.Chart(
+                EnvelopeCharts.Governing($"Rating {rating}, ISA: what sets the power", altitudes, machs, points, units)
+            ))
+
+    static member private ThrottleLine(model: EngineModel, altitude: float, mach: float) : OperatingPoint[] =
+        let flight = FlightCondition.AtIsaOffset(altitude, mach, 0.0)
+
+        [|
+            for k in 0..19 do
+                try
+                    model.At(&flight, Quantity.Lever, 0.05 * float (k + 1))
+                with :? NoSolutionException ->
+                    ()
+        |]
+
+    static member private Throttle(page: ReportPage, model: EngineModel, units: ChartUnits) =
+        page.Section "Throttle"
+
+        page.Attempt(fun () ->
+            let design = model.Engine.Definition.Design.Flight
+
+            let line altitude mach = {
+                Name = $"{units.AltitudeText altitude}, Mach {mach:F2}"
+                Points =
+                    EngineReport.ThrottleLine(model, altitude, mach)
+                    |> Array.filter (fun p -> p.NetThrust > 0.0)
+            }
+
+            page.Chart(
+                EnvelopeCharts.SfcLoops(
+                    "SFC against thrust, ISA",
+                    [|
+                        line 0.0 0.0
+                        line (0.5 * design.PressureAltitude) (0.75 * design.Mach)
+                        line design.PressureAltitude design.Mach
+                    |],
+                    units
+                )
+            ))
+
+    static member private Compressors(page: ReportPage, model: EngineModel, rating: string, units: ChartUnits) =
+        page.Section "Compressors and surge margins"
+        let engine = model.Engine
+
+        page.Attempt(fun () ->
+            let points = EngineReport.ThrottleLine(model, 0.0, 0.0)
+
+            let names = [
+                if engine.HasFan then
+                    "fan"
+                for c in engine.Compressors do
+                    c.Name
+            ]
+
+            page.Words "Working lines static at sea level, ISA, from low lever to full."
+
+            for name in names do
+                page.Chart(MapCharts.CompressorMap(engine, name, points, units)))
+
+        page.Attempt(fun () ->
+            let survey = SurgeSurvey.Run(model, rating)
+            page.Chart(LossCharts.SurgeBudget survey)
+
+            page.Table(
+                "Thinnest surge margin of each compressor",
+                1,
+                [
+                    "compressor"
+                    "margin %"
+                    "needed %"
+                    "slack points"
+                    $"altitude {units.AltitudeUnit}"
+                    "Mach"
+                    "ISA K"
+                    "thrust of rating %"
+                ],
+                [
+                    for b in survey.Budgets do
+                        [
+                            b.Compressor
+                            percent 1 b.Thinnest.MarginConstantFlow
+                            percent 1 b.Required
+                            percent 1 b.Slack
+                            number 0 (units.Altitude(float b.Thinnest.PressureAltitude))
+                            number 2 b.Thinnest.Mach
+                            number 0 (float b.Thinnest.IsaOffset)
+                            percent 0 b.Thinnest.ThrustShare
+                        ]
+                ]
+            )
+
+            page.Note
+                "Needed: textbook allowances, from memory. Margins are steady state and as good as the compressor maps.")
+
+    static member private Penalties(page: ReportPage, model: EngineModel, rating: string, units: ChartUnits) =
+        page.Section "What bleed, power and wear cost"
+
+        page.Attempt(fun () ->
+            let flight = model.Engine.Definition.Design.Flight
+            let result = Penalties.Run(model, flight, rating)
+
+            page.Words
+                $"At {units.AltitudeText flight.PressureAltitude}, Mach {flight.Mach:F2}, ISA {flight.IsaOffset:F0} K, on the thrust of rating {rating}; full solutions, one unit at a time."
+
+            page.Table(
+                "",
+                1,
+                [
+                    "one unit of"
+                    "SFC at constant thrust %"
+                    "T41 K"
+                    "EGT K"
+                    "thrust at the limit %"
+                    "break K"
+                ],
+                [
+                    for p in result.PerUnit do
+                        [
+                            p.Name
+                            percent 3 p.AtThrust.Full.Sfc
+                            number 2 (float p.AtThrust.Full.T41)
+                            number 2 (float p.AtThrust.Full.T45)
+                            percent 3 p.AtLimit.Full.NetThrust
+                            number 2 (float p.Break)
+                        ]
+                ]
+            )
+
+            model.At(&flight, Quantity.NetThrust, result.AtThrust.NetThrust) |> ignore
+            let influence = model.InfluenceOfLastPoint()
+
+            let steps = [|
+                for name in influence.Inputs do
+                    if name.Contains "factor" then
+                        { Name = name; Amount = -0.01 }
+                    elif name.EndsWith("_W", StringComparison.Ordinal) then
+                        { Name = name; Amount = 1e5 }
+                    elif name.EndsWith("fraction", StringComparison.Ordinal) then
+                        { Name = name; Amount = 0.01 }
+            |]
+
+            page.Chart(LossCharts.Tornado("What moves SFC at this thrust", influence, "sfc_kg_per_N_s", steps)))
+
+    /// <summary>
+    /// The report of an engine as one HTML page: nothing is fetched when it is read. The same engine and source give the same
+    /// bytes; what has no point is left out with its reason.
+    /// </summary>
+    /// <param name="source">text of the definition, provenance and caution</param>
+    /// <param name="units">units shown; SI with °C where null</param>
+    /// <exception cref="T:CycleSim.Reports.NoSolutionException">The design point itself has no solution.</exception>
+    static member Html
+        (
+            model: EngineModel,
+            source: ReportSource,
+            [<Optional; DefaultParameterValue(null: ChartUnits | null)>] units: ChartUnits | null
+        ) : string =
+        let units =
+            match units with
+            | null -> ChartUnits.SI
+            | given -> given
+
+        let definition = model.Engine.Definition
+        let page = ReportPage $"{definition.Name}: engine report"
+        page.Opening(definition.Name, definition.Description)
+        page.Caution source.Caution
+        page.Contents()
+        EngineReport.Definition(page, model.Engine, units, source)
+        EngineReport.Design(page, model, units)
+        page.Section "Ratings"
+
+        if definition.Ratings.Count = 0 then
+            page.Note "The definition gives no rating."
+
+        for rating in definition.Ratings do
+            EngineReport.Rating(page, model, rating, units)
+
+        EngineReport.Throttle(page, model, units)
+
+        // The envelope is that of a rating for flight where there is one.
+        let inFlight =
+            definition.Ratings
+            |> Seq.tryFind (fun r -> r.Thrust = 0.0)
+            |> Option.orElse (Seq.tryHead definition.Ratings)
+
+        match inFlight with
+        | None -> ()
+        | Some rating ->
+            EngineReport.Envelope(page, model, rating.Name, units)
+            EngineReport.Compressors(page, model, definition.Ratings[0].Name, units)
+            EngineReport.Penalties(page, model, rating.Name, units)
+
+        page.Section "Provenance"
+        page.Facts [ for entry in source.Provenance -> entry.Key.Replace('_', ' '), entry.Value ]
+        page.Caution source.Caution
+        page.Html
