@@ -47,16 +47,19 @@ internal static class ReportCommand
         var aside = path + ".writing";
         try
         {
-            File.WriteAllText(aside, html);
-            File.Move(aside, path, true);
+            try
+            {
+                File.WriteAllText(aside, html);
+                File.Move(aside, path, true);
+            }
+            finally
+            {
+                File.Delete(aside);
+            }
         }
         catch (Exception error) when (error is IOException or UnauthorizedAccessException)
         {
             throw new UsageException($"--out \"{path}\": {error.Message}");
-        }
-        finally
-        {
-            File.Delete(aside);
         }
     }
 }
