@@ -27,15 +27,10 @@ type internal SweepBlock = {
             bytes
         | bytes -> bytes
 
-    member private block.Write() : byte[] =
-        use stream = new MemoryStream()
-        use writer = new BinaryWriter(stream, UTF8Encoding false)
-        writer.Write block.Rows
+    /// Most texts of a column are alike: each is written once, then which one stands in which row.
+    member private block.WriteTexts(stream: Stream) : unit =
+        use writer = new BinaryWriter(stream, UTF8Encoding false, true)
 
-        for column in block.Numbers do
-            writer.Write(MemoryMarshal.AsBytes(ReadOnlySpan(column, 0, block.Rows)))
-
-        // Most texts of a column are alike: each is written once, then which one stands in which row.
         for column in block.Texts do
             let distinct = Array.distinct column
             let places = Dictionary<string, int>()
@@ -48,8 +43,23 @@ type internal SweepBlock = {
             for text in column do
                 writer.Write(uint16 places[text])
 
-        writer.Flush()
-        stream.ToArray()
+    member private block.Write() : byte[] =
+        use texts = new MemoryStream()
+        block.WriteTexts texts
+        let width = block.Rows * sizeof<float>
+
+        let bytes =
+            Array.zeroCreate<byte>(4 + block.Numbers.Length * width + int texts.Length)
+
+        BitConverter.TryWriteBytes(Span bytes, block.Rows) |> ignore
+        let mutable at = 4
+
+        for column in block.Numbers do
+            Buffer.BlockCopy(column, 0, bytes, at, width)
+            at <- at + width
+
+        texts.GetBuffer().AsSpan(0, int texts.Length).CopyTo(bytes.AsSpan at)
+        bytes
 
     static member Decode(index: int, numbers: int, texts: int, bytes: byte[]) : SweepBlock =
         use reader = new BinaryReader(new MemoryStream(bytes), UTF8Encoding false)
@@ -230,17 +240,17 @@ type internal FileStore
 
     override _.Keep block =
         let bytes = block.Encode()
-        let record = Array.zeroCreate<byte>(head + bytes.Length + checksum)
-        BitConverter.TryWriteBytes(Span(record, 0, 4), block.Index) |> ignore
-        BitConverter.TryWriteBytes(Span(record, 4, 4), bytes.Length) |> ignore
-        bytes.CopyTo(record, head)
-
-        SHA256.HashData(ReadOnlySpan(record, 0, head + bytes.Length), Span(record, head + bytes.Length, checksum))
-        |> ignore
-
+        let front = Array.zeroCreate<byte> head
+        BitConverter.TryWriteBytes(Span(front, 0, 4), block.Index) |> ignore
+        BitConverter.TryWriteBytes(Span(front, 4, 4), bytes.Length) |> ignore
+        use hash = IncrementalHash.CreateHash HashAlgorithmName.SHA256
+        hash.AppendData front
+        hash.AppendData bytes
         stream.Seek(0L, SeekOrigin.End) |> ignore
         let position = stream.Position
-        stream.Write record
+        stream.Write front
+        stream.Write bytes
+        stream.Write(hash.GetHashAndReset())
         // Out of the process, so that a kill cannot take it back.
         stream.Flush()
         places[block.Index] <- struct (position, bytes.Length)

@@ -86,7 +86,8 @@ type internal SweepWalk(plan: SweepPlan) =
     let mach = read Mach 0.0
     let airspeed = read CalibratedAirspeed nan
     let offset = read IsaOffset 0.0
-    let temperature = read OutsideTemperature nan
+    // Zero kelvin stands for a temperature that is not given.
+    let temperature = read OutsideTemperature 0.0
     let humidity = read RelativeHumidity 0.0
 
     let loads = [|
@@ -241,7 +242,7 @@ type internal SweepWalk(plan: SweepPlan) =
             |> ignore
 
         let outside =
-            if Double.IsNaN(temperature ()) then
+            if temperature () = 0.0 then
                 StandardAtmosphere.Temperature altitude + offset ()
             else
                 temperature ()
@@ -252,6 +253,30 @@ type internal SweepWalk(plan: SweepPlan) =
             dry.WithRelativeHumidity(humidity ())
         else
             dry
+
+    // Along a line of powers the condition stays the same: it is worked out again where one of the five has changed.
+    let asked = Array.create 5 nan
+    let mutable lastCondition = FlightCondition()
+
+    let conditionOf altitude mach =
+        let changed (k: int) (value: float) =
+            let other = asked[k] <> value
+            asked[k] <- value
+            other
+
+        let height = changed 0 altitude
+        let speed = changed 1 mach
+        let warmer = changed 2 (offset ())
+        let warm = changed 3 (temperature ())
+        let damp = changed 4 (humidity ())
+
+        if height || speed || warmer || warm || damp then
+            // A condition that cannot be leaves none behind.
+            asked[0] <- nan
+            lastCondition <- flight altitude mach
+            asked[0] <- altitude
+
+        lastCondition
 
     // Range errors of the core name a parameter of the code at their end, which says nothing to the reader of a table.
     let plainly (message: string) =
@@ -265,7 +290,7 @@ type internal SweepWalk(plan: SweepPlan) =
 
         let struct (outcome, reason, governing) =
             try
-                let condition = flight altitude mach
+                let condition = conditionOf altitude mach
                 outside <- condition.StaticTemperature
                 baseInputs.CopyTo(matcher.Inputs, 0)
                 InputLayout.SetFlight(matcher.Inputs.AsSpan(), &condition)
@@ -344,7 +369,15 @@ type internal SweepWalk(plan: SweepPlan) =
         {
             Index = index
             Rows = rows
-            Numbers = columns |> Array.map (Array.truncate rows)
-            Texts = words |> Array.map (Array.truncate rows)
+            Numbers =
+                (if rows = size then
+                     columns
+                 else
+                     columns |> Array.map (Array.truncate rows))
+            Texts =
+                (if rows = size then
+                     words
+                 else
+                     words |> Array.map (Array.truncate rows))
             Bytes = null
         }

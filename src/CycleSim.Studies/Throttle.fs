@@ -132,17 +132,8 @@ type Throttle private () =
     static let sfc = "sfc_kg_per_N_s"
     static let tropopause = 11000.0
 
-    static member private Inputs(model: EngineModel, flight: FlightCondition, loads: Action<float[]> | null) =
-        let inputs = model.Inputs(&flight)
-
-        match loads with
-        | null -> ()
-        | act -> act.Invoke inputs
-
-        inputs
-
     static member private At(model: EngineModel, flight: FlightCondition, thrust: float, loads) : OperatingPoint =
-        model.At(&flight, Quantity.NetThrust, thrust, Throttle.Inputs(model, flight, loads))
+        model.At(&flight, Quantity.NetThrust, thrust, StudyPoints.inputs model flight loads)
 
     static member private Row(altitude: float, thrust: float, point: unit -> OperatingPoint) : ThrottleRow =
         let row thrust (point: OperatingPoint | null) reason = {
@@ -227,7 +218,7 @@ type Throttle private () =
             raise (ArgumentOutOfRangeException(nameof count, $"A loop has 5 to 1000 points; {count} was given."))
 
         let rated =
-            model.AtRating(&flight, model.Rating rating, Throttle.Inputs(model, flight, loads)).NetThrust
+            model.AtRating(&flight, model.Rating rating, StudyPoints.inputs model flight loads).NetThrust
 
         let rows =
             SweepValues.Count(lowest * rated, rated, count)
@@ -448,7 +439,7 @@ type Throttle private () =
 
         let point altitude =
             let flight = FlightCondition.AtIsaOffset(altitude, mach, float isaOffset)
-            let rated = model.AtRating(&flight, known, Throttle.Inputs(model, flight, loads))
+            let rated = model.AtRating(&flight, known, StudyPoints.inputs model flight loads)
             Throttle.At(model, flight, share * rated.NetThrust, loads)
 
         let rows =
