@@ -1,6 +1,7 @@
 using System.CommandLine;
 using System.Text.Json.Nodes;
 using CycleSim.Definitions;
+using CycleSim.Engine;
 using CycleSim.Reports;
 using CycleSim.Studies;
 
@@ -16,6 +17,11 @@ internal static class SurgeMarginCommand
             "--rating",
             "Rating that is the highest power surveyed; the first one without it."
         );
+        var allowance = new Option<string[]>("--allowance")
+        {
+            Description =
+                "What eats a compressor's margin, for instance \"hpc transient=12 %\"; replaces the usual one of that name or is added as a systematic one; may be repeated.",
+        };
         var command = new Command(
             "surge-margin",
             """
@@ -25,12 +31,14 @@ internal static class SurgeMarginCommand
             Examples:
               cyclesim surge-margin velda-27
               cyclesim surge-margin velda-27 --worn "hpc efficiency=-3 %" --worn "hpc flow=-2 %"
+              cyclesim surge-margin velda-27 --allowance "hpc transient=12 %" --allowance "fan crosswind=2 %"
               cyclesim surge-margin velda-27 --bleed "handling-bleed=0 %" --csv margins.csv
             """
         )
         {
             common.Engine,
             rating,
+            allowance,
             common.Bleed,
             common.Open,
             common.Shut,
@@ -54,7 +62,8 @@ internal static class SurgeMarginCommand
                 var survey = SurgeSurvey.Run(
                     model,
                     result.GetValue(rating) ?? loaded.Engine.Ratings[0].Name,
-                    loads: common.Loads(result, model.Engine),
+                    Allowances(result.GetValue(allowance) ?? [], model.Engine),
+                    common.Loads(result, model.Engine),
                     cancellation: cancellation
                 );
                 Exports.Write(result, common, survey.Table(Exports.Provenance(result, loaded)));
@@ -66,6 +75,48 @@ internal static class SurgeMarginCommand
             }
         );
         return command;
+    }
+
+    /// <summary>The usual allowances with those of the command line in their place or beside them; null without any.</summary>
+    private static Dictionary<string, IReadOnlyList<MarginAllowance>>? Allowances(string[] texts, SizedEngine engine)
+    {
+        if (texts.Length == 0)
+            return null;
+        List<string> names =
+        [
+            .. engine.HasFan ? ["fan"] : Array.Empty<string>(),
+            .. engine.Compressors.Select(c => c.Name),
+        ];
+        var all = names.ToDictionary(
+            n => n,
+            n => SurgeSurvey.UsualAllowances(n == "fan", n == names[^1]).ToList(),
+            StringComparer.Ordinal
+        );
+        foreach (var text in texts)
+        {
+            var (what, value) = CommonOptions.Pair("--allowance", text, "hpc transient=12 %");
+            var space = what.IndexOf(' ');
+            var compressor = space > 0 ? what[..space] : what;
+            var name = space > 0 ? what[space..].Trim() : "";
+            if (!all.ContainsKey(compressor) || name.Length == 0)
+                throw new UsageException(
+                    $"--allowance: '{what}' is not a compressor and what eats its margin; this engine has {string.Join(", ", names)}."
+                );
+            var size = CommonOptions.Share("--allowance " + what, value);
+            if (size is not (>= 0.0 and < 1.0))
+                throw new UsageException($"--allowance {what}: '{value}' must lie between 0 and 100 %.");
+            // Every compressor has the same list, so that the table of allowances has a column for each.
+            foreach (var (owner, list) in all)
+            {
+                var at = list.FindIndex(a => a.Name == name);
+                if (at < 0)
+                    list.Add(new MarginAllowance(name, owner == compressor ? size : 0.0, false));
+                else if (owner == compressor)
+                    list[at] = new MarginAllowance(name, size, list[at].Random);
+            }
+        }
+
+        return all.ToDictionary(a => a.Key, a => (IReadOnlyList<MarginAllowance>)a.Value);
     }
 
     private static void Print(SurgeSurveyResult s, LoadedDefinition loaded, Display d)
@@ -106,10 +157,17 @@ internal static class SurgeMarginCommand
         );
         Layout.Table(
             "Needed, % of the working line's pressure ratio (random ones by root of the sum of squares)",
-            ["", .. s.Budgets[0].Allowances.Select(a => a.Random ? a.Name + " (random)" : a.Name)],
-            s.Budgets.Select(b =>
-                (string[])[b.Compressor, .. b.Allowances.Select(a => Display.Percent(a.Allowance, 1))]
-            )
+            ["", .. s.Budgets.Select(b => b.Compressor)],
+            s.Budgets[0]
+                .Allowances.Select(
+                    (a, k) =>
+                        (string[])
+                            [
+                                a.Random ? a.Name + " (random)" : a.Name,
+                                .. s.Budgets.Select(b => Display.Percent(b.Allowances[k].Allowance, 1)),
+                            ]
+                )
+                .Append(["all together", .. s.Budgets.Select(b => Display.Percent(b.Required, 1))])
         );
         var shortOf = s.Budgets.Where(b => b.Slack < 0.0).Select(b => b.Compressor).ToList();
         Layout.Line(

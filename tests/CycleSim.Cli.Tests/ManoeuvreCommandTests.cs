@@ -51,4 +51,34 @@ public class ManoeuvreCommandTests
         Assert.Contains(says, run.Error);
         Assert.Equal("", run.Output);
     }
+
+    [Fact]
+    public void Allowances_of_the_command_line_take_the_place_of_the_usual_ones()
+    {
+        var run = CommandLine.Run([
+            "surge-margin",
+            "velda-27",
+            "--allowance",
+            "hpc transient=12 %",
+            "--allowance",
+            "fan crosswind=2 %",
+            "--json",
+        ]);
+        Assert.Equal(0, run.ExitCode);
+        var hpc = Compressor(run, "hpc");
+        // 4, 1, 12, 1 and 2 % systematic; 2.5 and 1.5 % random: 20 % and the root of 8.5, by hand.
+        Assert.Equal(0.20 + Math.Sqrt(8.5e-4), hpc.GetProperty("margin_required").GetDouble(), 1e-12);
+        var crosswind = Compressor(run, "fan")
+            .GetProperty("allowances")
+            .EnumerateArray()
+            .Single(a => a.GetProperty("name").GetString() == "crosswind");
+        Assert.Equal(0.02, crosswind.GetProperty("allowance").GetDouble());
+
+        var unknown = CommandLine.Run(["surge-margin", "velda-27", "--allowance", "core transient=12 %"]);
+        Assert.Equal(2, unknown.ExitCode);
+        Assert.Contains("fan, booster, hpc", unknown.Error);
+    }
+
+    private static System.Text.Json.JsonElement Compressor(CommandLine run, string name) =>
+        run.Json.GetProperty("compressors").EnumerateArray().Single(c => c.GetProperty("name").GetString() == name);
 }
