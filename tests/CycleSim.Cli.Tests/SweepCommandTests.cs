@@ -101,9 +101,7 @@ public sealed class SweepCommandTests : IDisposable
         using (var process = System.Diagnostics.Process.Start(start)!)
         {
             // Some blocks are on disk; whether the last one is whole is left to chance.
-            while (
-                !process.HasExited && !(new FileInfo(killed + ".unfinished") is { Exists: true, Length: > 400_000 })
-            )
+            while (!process.HasExited && !(new FileInfo(killed + ".unfinished") is { Exists: true, Length: > 400_000 }))
                 Thread.Sleep(1);
             process.Kill();
             process.WaitForExit();
