@@ -32,7 +32,10 @@ type ChartHtml private () =
     static member LibraryElement: string =
         "<script>" + ChartHtml.InScript source.Value + "</script>"
 
-    /// <summary>A chart as an element with its script; draws where the library stands in the page.</summary>
+    /// <summary>
+    /// A chart as an element with its script, which waits for the library: a notebook may put its outputs on the page in any
+    /// order.
+    /// </summary>
     /// <param name="id">identifier of the element, unlike any other of the page</param>
     static member Fragment(chart: GenericChart, id: string) : string =
         let figure = ChartHtml.InScript(GenericChart.toFigureJson chart)
@@ -40,7 +43,8 @@ type ChartHtml private () =
         let config =
             ChartHtml.InScript(JsonConvert.SerializeObject(GenericChart.getConfig chart))
 
-        $"<div class=\"cyclesim-chart\" id=\"{id}\"></div><script>(function(){{var figure={figure};"
+        $"<div class=\"cyclesim-chart\" id=\"{id}\"></div><script>(function draw(){{"
+        + $"if(!window.Plotly){{setTimeout(draw,50);return;}}var figure={figure};"
         + $"Plotly.newPlot(\"{id}\",figure.data,figure.layout,{config});}})();</script>"
 
     /// A chart with an identifier of its own.

@@ -1,6 +1,8 @@
 namespace CycleSim.Notebooks
 
 open System
+open System.Reflection
+open System.Runtime.CompilerServices
 open CycleSim.Definitions
 open CycleSim.Engine
 open CycleSim.Matching
@@ -13,6 +15,13 @@ open Plotly.NET
 /// Shows results in notebooks: tables with units, and charts that need no network.
 [<AbstractClass; Sealed>]
 type NotebookDisplay private () =
+    // Plotly.NET asks for a newer FSharp.Core than the kernel has loaded, and runs with the kernel's.
+    static let oneFSharpCore =
+        ResolveEventHandler(fun _ request ->
+            if AssemblyName(request.Name).Name = "FSharp.Core" then
+                typeof<unit>.Assembly
+            else
+                null)
 
     static member private Show<'T>(html: 'T -> string, text: 'T -> string) =
         Formatter.Register<'T>(Func<'T, string> html, HtmlFormatter.MimeType)
@@ -22,9 +31,19 @@ type NotebookDisplay private () =
     static member private Show<'T>(sheet: 'T -> Sheet) =
         NotebookDisplay.Show<'T>(sheet >> SheetHtml.write, sheet >> SheetText.write)
 
+    static member private ShowTable<'T>(table: 'T -> StudyTable) =
+        NotebookDisplay.Show<'T>(table >> StudySheets.ofTable)
+
     /// Call it in the first cell, in C# or F#: registers how results are shown, as HTML and as plain text, and puts the
     /// drawing library of the charts into this cell's output. Outside a notebook it only registers.
     static member Register() =
+        AppDomain.CurrentDomain.remove_AssemblyResolve oneFSharpCore
+        AppDomain.CurrentDomain.add_AssemblyResolve oneFSharpCore
+        NotebookDisplay.RegisterAll()
+
+    // Apart, since Plotly.NET must not be looked for before that.
+    [<MethodImpl(MethodImplOptions.NoInlining)>]
+    static member private RegisterAll() =
         NotebookDisplay.Show<EngineDefinition> EngineSheets.ofDefinition
         NotebookDisplay.Show<LoadedDefinition> EngineSheets.ofLoaded
         NotebookDisplay.Show<EngineModel> EngineSheets.ofModel
@@ -39,10 +58,16 @@ type NotebookDisplay private () =
         NotebookDisplay.Show<RequiredRating> StudySheets.ofRequiredRating
         NotebookDisplay.Show<BreakEffect seq> StudySheets.ofBreakEffects
         NotebookDisplay.Show<PenaltiesResult> StudySheets.ofPenalties
-        NotebookDisplay.Show<RatingMap>(fun map -> StudySheets.ofTable (map.Table [||]))
-        NotebookDisplay.Show<ManoeuvreResult>(fun result -> StudySheets.ofTable (result.Table [||]))
-        NotebookDisplay.Show<PowerTablesResult>(fun result -> StudySheets.ofTable (result.Table [||]))
-        NotebookDisplay.Show<TakeOffRunResult>(fun result -> StudySheets.ofTable (result.Table [||]))
+        NotebookDisplay.ShowTable<RatingMap> _.Table([||])
+        NotebookDisplay.ShowTable<ManoeuvreResult> _.Table([||])
+        NotebookDisplay.ShowTable<PowerTablesResult> _.Table([||])
+        NotebookDisplay.ShowTable<TakeOffRunResult> _.Table([||])
+        NotebookDisplay.ShowTable<PerformanceTable> _.Table([||])
+        NotebookDisplay.ShowTable<ReducedThrustResult> _.Table([||])
+        NotebookDisplay.ShowTable<ThrottleLoop> _.Table([||])
+        NotebookDisplay.ShowTable<BestAltitude> _.Table([||])
+        NotebookDisplay.ShowTable<SweepResult> _.Table([||])
+        NotebookDisplay.Show<SweepSummary> StudySheets.ofSweep
         NotebookDisplay.Show<Influence> StudySheets.ofInfluence
         NotebookDisplay.Show<StudyTable> StudySheets.ofTable
         NotebookDisplay.Show<GenericChart>(ChartDisplay.html, ChartDisplay.text)

@@ -75,5 +75,10 @@ type NotebookProgress private (what: string, context: KernelInvocationContext | 
         finally
             gate.Exit()
 
+    /// <summary>Takes the number of rows done so far, as a sweep tells it.</summary>
+    /// <param name="total">rows of the whole</param>
+    member progress.Rows(total: int64) : Action<int64> =
+        Action<int64>(fun rows -> progress.Report(float rows / float total))
+
     interface IProgress<float> with
         member progress.Report share = progress.Report share

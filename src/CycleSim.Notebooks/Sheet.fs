@@ -62,6 +62,9 @@ module internal Figures =
     let signedPercent share =
         written "+0.00;-0.00;0.00" (share * 100.0)
 
+    let finePercent share =
+        written "+0.0000;-0.0000;0.0000" (share * 100.0)
+
     let offset kelvin = written "+0.0;-0.0;0.0" kelvin
     let yesNo value = if value then "yes" else "no"
 

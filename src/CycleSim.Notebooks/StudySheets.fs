@@ -243,8 +243,8 @@ module internal StudySheets =
          | _ -> $"{Figures.flow s.Amount} kg/s")
         Figures.pressure (float s.SupplyPressure)
         Figures.temperature (float s.SupplyTemperature)
-        Figures.signedPercent s.Sfc
-        Figures.signedPercent s.NetThrust
+        Figures.finePercent s.Sfc
+        Figures.finePercent s.NetThrust
         (if s.Reason = "" then Figures.none else s.Reason)
     ]
 
@@ -333,3 +333,16 @@ module internal StudySheets =
                 }
             ]
         }
+
+    let ofSweep (summary: SweepSummary) = {
+        Title =
+            $"Sweep: {summary.Points} points, {summary.Solved} solved, in {Figures.decimals 1 summary.Seconds} s ({Figures.decimals 0 summary.PointsPerSecond} points/s)"
+        Parts = [
+            Facts [
+                "outside the corridor", string summary.OutsideCorridor
+                "left by an earlier run", string summary.Resumed
+                for ending in summary.WithoutSolution do
+                    ending.Key, string ending.Value
+            ]
+        ]
+    }
