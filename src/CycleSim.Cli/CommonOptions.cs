@@ -3,6 +3,8 @@ using System.Globalization;
 using CycleSim.Air;
 using CycleSim.Definitions;
 using CycleSim.Engine;
+using CycleSim.Studies;
+using Units = CycleSim.Definitions.Units;
 
 namespace CycleSim.Cli;
 
@@ -217,14 +219,15 @@ internal sealed class CommonOptions
             changes.Add((engine.Layout.PowerOfftake(spool), Positive("--offtake " + name, value, Dimension.Power)));
         }
 
-        foreach (var text in result.GetValue(Worn) ?? [])
-        {
-            var (name, value) = Pair("--worn", text, "hpt efficiency=-2 %");
-            var change = Share("--worn " + name, value);
-            if (change is not (> -0.5 and < 0.5))
-                throw new UsageException($"--worn {name}: '{value}' must lie between -50 and 50 %.");
-            changes.Add((HealthInput(engine, name), 1.0 + change));
-        }
+        foreach (var part in WornParts(result))
+            try
+            {
+                changes.Add((Wear.Input(engine, part.Name), 1.0 + part.Change));
+            }
+            catch (WearException error)
+            {
+                throw new UsageException("--worn: " + error.Message);
+            }
 
         return inputs =>
         {
@@ -235,6 +238,22 @@ internal sealed class CommonOptions
             foreach (var (index, value) in changes)
                 inputs[index] = value;
         };
+    }
+
+    /// <summary>What the command line says is worn.</summary>
+    public IReadOnlyList<WornPart> WornParts(ParseResult result)
+    {
+        var parts = new List<WornPart>();
+        foreach (var text in result.GetValue(Worn) ?? [])
+        {
+            var (name, value) = Pair("--worn", text, "hpt efficiency=-2 %");
+            var change = Share("--worn " + name, value);
+            if (change is not (> -0.5 and < 0.5))
+                throw new UsageException($"--worn {name}: '{value}' must lie between -50 and 50 %.");
+            parts.Add(new WornPart(name, change));
+        }
+
+        return parts;
     }
 
     /// <summary>Whether any condition or load is given beside the engine.</summary>
@@ -259,32 +278,6 @@ internal sealed class CommonOptions
             : throw new UsageException(
                 $"{option}: '{name}' is not an air port of this engine; it has {string.Join(", ", ports)}."
             );
-    }
-
-    private static int HealthInput(SizedEngine engine, string name)
-    {
-        var words = name.Split(' ', StringSplitOptions.RemoveEmptyEntries);
-        if (words is [var component, "efficiency" or "flow"])
-        {
-            var efficiency = words[1] == "efficiency";
-            var layout = engine.Layout;
-            if (component == "fan" && engine.HasFan)
-                return efficiency ? layout.CompressorEfficiency(0) : layout.CompressorFlow(0);
-            for (var k = 0; k < engine.Compressors.Length; k++)
-                if (engine.Compressors[k].Name == component)
-                    return efficiency ? layout.CompressorEfficiency(k + 1) : layout.CompressorFlow(k + 1);
-            for (var k = 0; k < engine.Turbines.Length; k++)
-                if (engine.Turbines[k].Definition.Name == component)
-                    return efficiency ? layout.TurbineEfficiency(k) : layout.TurbineFlow(k);
-        }
-
-        var known = engine
-            .Compressors.Select(c => c.Name)
-            .Concat(engine.Turbines.Select(t => t.Definition.Name))
-            .Concat(engine.HasFan ? ["fan"] : []);
-        throw new UsageException(
-            $"--worn: '{name}' is not a component and 'efficiency' or 'flow'; this engine has {string.Join(", ", known)}."
-        );
     }
 
     public static Option<string?> Text(string name, string description) => new(name) { Description = description };

@@ -85,6 +85,27 @@ internal sealed class PowerSetting
         return model.At(flight, choice.Quantity, Value(choice, result.GetValue(choice.Option)!), inputs);
     }
 
+    /// <summary>Adds the options that set the power by a quantity alone.</summary>
+    public void AddQuantitiesTo(Command command)
+    {
+        foreach (var choice in _choices)
+            command.Add(choice.Option);
+    }
+
+    /// <summary>The one quantity that sets the power.</summary>
+    public Limit Single(ParseResult result)
+    {
+        var given = _choices.Where(c => result.GetValue(c.Option) is not null).ToList();
+        return given.Count == 1 ? new Limit(given[0].Quantity, Value(given[0], result.GetValue(given[0].Option)!))
+            : given.Count == 0
+                ? throw new UsageException(
+                    $"say at what power: one of {string.Join(", ", _choices.Select(c => c.Option.Name))}."
+                )
+            : throw new UsageException(
+                $"{string.Join(" and ", given.Select(c => c.Option.Name))} each set the power; use one of them."
+            );
+    }
+
     /// <summary>A power setting by the name of its option without the dashes; null for any other name.</summary>
     public Limit? Named(string name, string text) =>
         _choices.FirstOrDefault(c => c.Option.Name == "--" + name) is { } choice

@@ -28,6 +28,9 @@ var root = new RootCommand(
       cyclesim throttle velda-27 --altitude "35000 ft" --mach 0.78 --rating max-cruise
       cyclesim tables velda-27 --rating max-climb --csv climb.csv
       cyclesim reduced-thrust velda-27 --altitude "0 ft" --temperature "20 °C" --wanted-thrust "100 kN"
+      cyclesim egt-margin velda-27 --egt-limit "1260 K" --worn "hpt efficiency=-2 %"
+      cyclesim diagnose velda-27 --altitude "0 ft" --mach 0 --N1 "95 %" --shift "EGT=12 K" --shift "fuel-flow=1.1 %"
+      cyclesim uncertainty velda-27 --altitude "0 ft" --mach 0 --thrust "110 kN" --on "hpt efficiency: normal 0.5 %"
       cyclesim report velda-27
       cyclesim point my-engine.toml --altitude "0 m" --mach 0 --thrust "100 kN" --json
 
@@ -51,6 +54,9 @@ var root = new RootCommand(
     ThrottleCommand.Create(),
     TablesCommand.Create(),
     ReducedThrustCommand.Create(),
+    EgtMarginCommand.Create(),
+    DiagnoseCommand.Create(),
+    UncertaintyCommand.Create(),
     ReportCommand.Create(),
 };
 
@@ -67,7 +73,8 @@ try
 {
     return parsed.Invoke(new InvocationConfiguration { EnableDefaultExceptionHandler = false });
 }
-catch (Exception error) when (error is UsageException or LoadException or SweepException)
+catch (Exception error)
+    when (error is UsageException or LoadException or SweepException or WearException or UncertaintyException)
 {
     return Fail(error, ExitCode.Usage);
 }
