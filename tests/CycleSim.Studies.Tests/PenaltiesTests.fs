@@ -275,26 +275,35 @@ let tests =
             refused [| LoadItem.AirShare("customer-bleed", nan) |] "more than nothing"
             refused [| LoadItem.AirShare("customer-bleed", 1.0) |] "less than 100 %")
 
-        testCase "delivery bleed against the published take-off thrust" (fun () ->
-            let ratio = takeOffRatio (withPorts "velda-27")
+        // Which engine meets the source where: at the delivery the direct-drive one (booster 1.75, bypass ratio 6), in front of
+        // the high-pressure compressor the geared one (2.8 and 11). Elsewhere each misses it, by up to 5 points in front and
+        // 7 at the delivery, and at 8 % half-way neither is within 3 points: how much work is done ahead of the port, and by
+        // how much thrust goes with the core, is the engine's own affair.
+        testCase
+            "take-off thrust against the published one, at the ports where an engine is like the source's"
+            (fun () ->
+                let near name port w cases =
+                    let ratio = takeOffRatio (withPorts name)
 
-            for percent, points in [ 2, 0.015; 4, 0.015; 8, 0.030 ] do
-                let here = ratio "test-end" percent
-                let there = publishedRatio percent 1.0
-                Expect.isLessThan (abs (here - there)) points $"{percent} %%: {here:F4} against {there:F4}")
+                    for percent, points in cases do
+                        let here, there = ratio port percent, publishedRatio percent w
+                        Expect.isLessThan (abs (here - there)) points $"{percent} %% at w = {w}: {here:F4}, {there:F4}"
 
-        // Air taken ahead of the high-pressure compressor has only had the work of fan and booster. How much that is
-        // differs between engines: the source's lies between one with a booster of 1.75 and a bypass ratio of 6 (less loss)
-        // and a geared one with 2.8 and 11 (more loss), at every port and share. Neither alone is within 1.5 points there.
-        testCase "the shipped twin-spool engines stand on either side of the published take-off thrust" (fun () ->
-            let small = takeOffRatio (withPorts "velda-27")
-            let geared = takeOffRatio (withPorts "lunde-14g")
+                near "velda-27" "test-end" 1.0 [ 2, 0.015; 4, 0.015; 8, 0.030 ]
+                near "lunde-14g" "test-front" 0.0 [ 2, 0.015; 4, 0.015; 8, 0.030 ]
+                near "lunde-14g" "test-middle" 0.5 [ 2, 0.015; 4, 0.015 ])
 
-            for port, w in [ "test-front", 0.0; "test-middle", 0.5; "test-end", 1.0 ] do
-                for percent in [ 2; 4; 8 ] do
-                    let published = publishedRatio percent w
-                    Expect.isGreaterThan (small port percent) published $"{percent} %% at w = {w}, velda-27"
-                    Expect.isLessThan (geared port percent) published $"{percent} %% at w = {w}, lunde-14g")
+        testCase
+            "half-way and at the delivery the twin-spool engines stand on either side of the published thrust"
+            (fun () ->
+                let direct = takeOffRatio (withPorts "velda-27")
+                let geared = takeOffRatio (withPorts "lunde-14g")
+
+                for port, w in [ "test-middle", 0.5; "test-end", 1.0 ] do
+                    for percent in [ 2; 4; 8 ] do
+                        let published = publishedRatio percent w
+                        Expect.isGreaterThan (direct port percent) published $"{percent} %% at w = {w}, velda-27"
+                        Expect.isLessThan (geared port percent) published $"{percent} %% at w = {w}, lunde-14g")
 
         // Why: with more of the same compression done ahead of the port, more work is lost with the air.
         testCase "the more work is done in front of the port, the more its air costs" (fun () ->
