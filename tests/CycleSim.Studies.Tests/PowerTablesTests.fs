@@ -52,7 +52,7 @@ let private table (corner: Corner) axis loads =
             axis,
             Calibrated(corner.Speed * 1.0<m / s>),
             coldest = -100.0<K>,
-            hottest = 60.0<K>,
+            hottest = 100.0<K>,
             loads = loads
         )
         .Tables[0]
