@@ -15,8 +15,14 @@ module internal ChartStyle =
     let dashes = [| "solid"; "dash"; "dot"; "dashdot"; "longdash"; "longdashdot" |]
     let symbols = [| "circle"; "square"; "diamond"; "triangle-up"; "triangle-down"; "cross" |]
 
-    /// From good (light) to thin (dark), one hue through the next.
-    let scale = [| "#f6efd9"; "#e6cf93"; "#cfa14c"; "#a8752f"; "#774a33"; "#43263a" |]
+    /// Light to dark, one hue through the next; ink can be read on all of it.
+    let scale = [| "#fdfaf0"; "#f4e6bf"; "#e8cc8b"; "#dbae64"; "#cf9359"; "#c67f62" |]
+
+    /// Light ground of a region, in the order of the colours.
+    let tints = [| "#c9d6e4"; "#ecd3d8"; "#cfe6da"; "#f5e3bf"; "#e3eaf1"; "#f7eaed" |]
+
+    /// Fillings of bars, told apart in black and white.
+    let fillings = [| ""; "/"; "x"; "."; "-"; "\\"; "|"; "+" |]
 
     let caution = "Engineering study; not for dispatch, flight or maintenance."
 
@@ -81,6 +87,33 @@ module internal ChartStyle =
             "line", line lineColour width dashing
         ]
 
+    /// An entry of the legend without points in the drawing.
+    let entry name (symbol: string) colour =
+        trace "scatter" [
+            "name", box name
+            "mode", box "markers"
+            "x", numbers [ nan ]
+            "y", numbers [ nan ]
+            "showlegend", box true
+            "marker", box (make [ "size", box 9; "color", box colour; "symbol", box symbol ])
+        ]
+
+    /// What has no point, and why: the number of places and the reasons, each once.
+    let missing (what: string) (reasons: string seq) =
+        let all = Seq.toArray reasons
+        let told = all |> Array.filter (fun r -> r <> "") |> Array.distinct
+
+        if all.Length = 0 then
+            ""
+        else
+            let why =
+                if told.Length = 0 then
+                    ""
+                else
+                    ": " + String.concat " " told
+
+            $"{all.Length} {what} left out{why}"
+
     let hidden (t: Trace) =
         t.SetProperty("showlegend", false)
         t
@@ -109,6 +142,9 @@ module internal ChartStyle =
             "font", box (make [ "size", box 12; "color", box ink ])
             yield! fields
         ]
+
+    /// Keeps a word readable where lines pass behind it.
+    let plate: (string * objnull) seq = [ "bgcolor", box "rgba(255,255,255,0.85)"; "borderpad", box 1 ]
 
     let note (text: string) =
         label (box 0.0) (box -0.24) text [
@@ -152,12 +188,19 @@ module internal ChartStyle =
                 )
                 "paper_bgcolor", box "white"
                 "plot_bgcolor", box "white"
-                "height", box 520
-                "margin", box (make [ "l", box 80; "r", box 30; "t", box 70; "b", box 110 ])
+                "height", box 545
+                "margin", box (make [ "l", box 80; "r", box 30; "t", box 70; "b", box 135 ])
                 "hovermode", box "closest"
                 "separators", box ". "
                 "hoverlabel", box (make [ "bgcolor", box "white"; "font", box (make [ "size", box 13 ]) ])
-                "legend", box (make [ "bgcolor", box "rgba(255,255,255,0.8)" ])
+                "legend",
+                box (
+                    make [
+                        "bgcolor", box "rgba(255,255,255,0.8)"
+                        "tracegroupgap", box 0
+                        "traceorder", box "normal"
+                    ]
+                )
                 "xaxis", box xAxis
                 "yaxis", box yAxis
                 "annotations", box (Seq.toArray labels)

@@ -4,6 +4,7 @@ open System
 open System.Globalization
 open FSharp.Data.UnitSystems.SI.UnitSymbols
 open CycleSim.Engine
+open CycleSim.Reports
 open CycleSim.Studies
 
 /// The units in which a chart shows its numbers; everything goes in in SI.
@@ -72,7 +73,7 @@ type ChartUnits(us: bool, celsius: bool) =
     /// A number as a note would give it; a dash where there is none.
     static member Text(value: float, digits: int) =
         if Double.IsFinite value then
-            value.ToString($"N{digits}", CultureInfo.InvariantCulture).Replace(",", " ")
+            value.ToString($"N{digits}", CultureInfo.InvariantCulture).Replace(",", " ").Replace("-", "−")
         else
             "–"
 
@@ -110,3 +111,35 @@ type ChartUnits(us: bool, celsius: bool) =
             | _ -> ChartUnits.Text(limit.Value * 100.0, 1) + " %"
 
         QuantityText.Name limit.Quantity + " " + value
+
+    /// What is left on the limits that do not set the power: "35 K left on T45, 1.8 points on N2". Empty where all is said.
+    member units.RoomText(limits: seq<Limit>, point: OperatingPoint) =
+        let left (limit: Limit) =
+            let room = limit.Value - point.Value limit.Quantity
+
+            let number scale digits =
+                ChartUnits.Text(abs room * scale, digits)
+
+            let amount =
+                match limit.Quantity with
+                | Quantity.T3
+                | Quantity.T4
+                | Quantity.T41
+                | Quantity.T45
+                | Quantity.T5 -> number 1.0 0 + " K"
+                | Quantity.P3 -> $"{ChartUnits.Text(units.Pressure(abs room), 0)} {units.PressureUnit}"
+                | Quantity.FuelFlow ->
+                    $"{ChartUnits.Text(units.FuelFlow(abs room), (if us then 0 else 3))} {units.FuelFlowUnit}"
+                | Quantity.Epr -> number 1.0 3
+                | _ -> number 100.0 1 + " points"
+
+            let side = if room < 0.0 then "beyond" else "left on"
+            $"{amount} {side} {QuantityText.Name limit.Quantity}"
+
+        limits
+        |> Seq.filter (fun limit ->
+            limit.Quantity <> point.Setting.Quantity
+            && limit.Quantity <> Quantity.NetThrust
+            && limit.Quantity <> Quantity.InstalledThrust)
+        |> Seq.map left
+        |> String.concat ", "

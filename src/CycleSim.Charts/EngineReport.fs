@@ -94,7 +94,98 @@ type EngineReport private () =
                 ]
             )
 
-        page.Text("The definition as it was read", source.Text)
+    static member private Components(page: ReportPage, p: OperatingPoint, units: ChartUnits) =
+        page.Table(
+            "Compressors",
+            1,
+            [
+                "name"
+                "pressure ratio"
+                "isentropic efficiency %"
+                "polytropic efficiency %"
+                $"corrected flow {units.FlowUnit}"
+                "power MW"
+                "surge margin %"
+                "at constant speed %"
+            ],
+            [
+                for c in p.Compressors do
+                    [
+                        c.Name
+                        number 3 c.PressureRatio
+                        percent 1 c.IsentropicEfficiency
+                        percent 1 c.PolytropicEfficiency
+                        number 2 (units.Flow c.CorrectedFlow)
+                        number 3 (c.Power / 1e6)
+                        percent 1 c.SurgeMarginConstantFlow
+                        percent 1 c.SurgeMarginConstantSpeed
+                    ]
+            ]
+        )
+
+        page.Table(
+            "Turbines",
+            1,
+            [
+                "name"
+                "expansion ratio"
+                "isentropic efficiency %"
+                "work kJ/kg"
+                "power MW"
+                "choked"
+            ],
+            [
+                for t in p.Turbines do
+                    [
+                        t.Name
+                        number 3 t.ExpansionRatio
+                        percent 1 t.IsentropicEfficiency
+                        number 1 (t.SpecificWork / 1000.0)
+                        number 3 (t.Power / 1e6)
+                        (if t.Choked then "yes" else "no")
+                    ]
+            ]
+        )
+
+        page.Table(
+            "Spools",
+            1,
+            [ "name"; "speed %"; "rpm"; "turbine power MW"; "taken off kW" ],
+            [
+                for s in p.Spools do
+                    [
+                        s.Name
+                        percent 1 s.RelativeSpeed
+                        number 0 s.Rpm
+                        number 3 (s.TurbinePower / 1e6)
+                        number 1 (s.Offtake / 1000.0)
+                    ]
+            ]
+        )
+
+        page.Table(
+            "Nozzles",
+            1,
+            [
+                "name"
+                "pressure ratio"
+                "exit speed m/s"
+                "effective area m²"
+                $"gross thrust {units.ThrustUnit}"
+                "choked"
+            ],
+            [
+                for n in p.Nozzles do
+                    [
+                        n.Name
+                        number 3 n.PressureRatio
+                        number 1 n.ExitSpeed
+                        number 4 n.EffectiveArea
+                        number 2 (units.Thrust n.GrossThrust)
+                        (if n.Choked then "yes" else "no")
+                    ]
+            ]
+        )
 
     static member private Design(page: ReportPage, model: EngineModel, units: ChartUnits) =
         page.Section "Design point"
@@ -139,27 +230,35 @@ type EngineReport private () =
         page.Chart(PointCharts.StationProfile(p, units))
         page.Chart(PointCharts.TemperatureEntropy(p, units))
 
-        page.Chart(
-            LossCharts.Waterfall(
-                "From gross to installed thrust",
+        EngineReport.Components(page, p, units)
+
+        // What is nothing is not drawn: no ram drag at rest, no nacelle drag where none is defined.
+        let losses =
+            [|
                 {
-                    Name = "gross thrust"
-                    Amount = units.Thrust p.GrossThrust
-                },
-                [|
+                    Name = "ram drag"
+                    Amount = -units.Thrust p.RamDrag
+                }
+                {
+                    Name = "nacelle"
+                    Amount = units.Thrust p.InstalledThrust - units.Thrust p.NetThrust
+                }
+            |]
+            |> Array.filter (fun loss -> abs loss.Amount > 1e-9 * units.Thrust p.GrossThrust)
+
+        if losses.Length > 0 then
+            page.Chart(
+                LossCharts.Waterfall(
+                    "From gross to installed thrust",
                     {
-                        Name = "ram drag"
-                        Amount = -units.Thrust p.RamDrag
-                    }
-                    {
-                        Name = "nacelle"
-                        Amount = units.Thrust p.InstalledThrust - units.Thrust p.NetThrust
-                    }
-                |],
-                "installed thrust",
-                units.ThrustUnit
+                        Name = "gross thrust"
+                        Amount = units.Thrust p.GrossThrust
+                    },
+                    losses,
+                    "installed thrust",
+                    units.ThrustUnit
+                )
             )
-        )
 
     // A rating with a thrust of its own is one of the ground; the others are shown where the engine was designed to fly.
     static member private Places(model: EngineModel, rating: RatingDefinition) : struct (float * float)[] =
@@ -221,19 +320,25 @@ type EngineReport private () =
         page.Attempt(fun () ->
             let design = model.Engine.Definition.Design.Flight
             let ceiling = max 12500.0 design.PressureAltitude
-            let altitudes = [| for k in 0..10 -> ceiling * float k / 10.0 |]
-            let machs = [| for k in 0..9 -> max 0.9 design.Mach * float k / 9.0 |]
+            let altitudes = [| for k in 0..20 -> ceiling * float k / 20.0 |]
+            let machs = [| for k in 0..18 -> max 0.9 design.Mach * float k / 18.0 |]
             let known = model.Rating rating
 
-            let points =
-                Array2D.init altitudes.Length machs.Length (fun i j ->
-                    let flight = FlightCondition.AtIsaOffset(altitudes[i], machs[j], 0.0)
+            let at offset =
+                let places =
+                    Array2D.init altitudes.Length machs.Length (fun i j ->
+                        let flight = FlightCondition.AtIsaOffset(altitudes[i], machs[j], offset)
 
-                    try
-                        model.AtRating(&flight, known)
-                    with
-                    | :? NoSolutionException
-                    | :? CycleSim.Matching.RatingException -> Unchecked.defaultof<OperatingPoint>)
+                        try
+                            model.AtRating(&flight, known), ""
+                        with
+                        | :? NoSolutionException
+                        | :? CycleSim.Matching.RatingException as none ->
+                            Unchecked.defaultof<OperatingPoint>, none.Message)
+
+                Array2D.map fst places, Array2D.map snd places
+
+            let points, reasons = at 0.0
 
             page.Words
                 $"Rating {rating} at standard temperature over the whole range of altitude and Mach number, also where the aeroplane would not fly it."
@@ -245,55 +350,67 @@ type EngineReport private () =
                     EnvelopeQuantity.SurgeMargin, "smallest surge margin"
                 ] do
                 page.Chart(
-                    EnvelopeCharts.Map($"Rating {rating}, ISA: {name}", quantity, altitudes, machs, points, units)
+                    EnvelopeCharts.Map(
+                        $"Rating {rating}, ISA: {name}",
+                        quantity,
+                        altitudes,
+                        machs,
+                        points,
+                        units,
+                        known.Limits,
+                        reasons
+                    )
                 )
 
-            page.Chart(
-                EnvelopeCharts.Governing($"Rating {rating}, ISA: what sets the power", altitudes, machs, points, units)
-            ))
+            // On a standard day much of it is flat; on a hot one the limits speak.
+            for offset in [ 0.0; 20.0 ] do
+                let points, reasons = if offset = 0.0 then points, reasons else at offset
+                let day = if offset = 0.0 then "ISA" else $"ISA +{offset:F0} K"
 
-    static member private ThrottleLine(model: EngineModel, altitude: float, mach: float) : OperatingPoint[] =
-        let flight = FlightCondition.AtIsaOffset(altitude, mach, 0.0)
+                page.Attempt(fun () ->
+                    page.Chart(
+                        EnvelopeCharts.Governing(
+                            $"Rating {rating}, {day}: what sets the power",
+                            altitudes,
+                            machs,
+                            points,
+                            units,
+                            known.Limits,
+                            reasons
+                        )
+                    )))
 
-        [|
-            for k in 0..19 do
-                try
-                    model.At(&flight, Quantity.Lever, 0.05 * float (k + 1))
-                with :? NoSolutionException ->
-                    ()
-        |]
-
-    static member private Throttle(page: ReportPage, model: EngineModel, units: ChartUnits) =
+    static member private Throttle(page: ReportPage, model: EngineModel, rating: string, units: ChartUnits) =
         page.Section "Throttle"
 
         page.Attempt(fun () ->
             let design = model.Engine.Definition.Design.Flight
 
-            let line altitude mach = {
-                Name = $"{units.AltitudeText altitude}, Mach {mach:F2}"
-                Points =
-                    EngineReport.ThrottleLine(model, altitude, mach)
-                    |> Array.filter (fun p -> p.NetThrust > 0.0)
-            }
+            let loops = [|
+                for share in [ 0.0; 0.5; 1.0 ] do
+                    let flight =
+                        FlightCondition.AtIsaOffset(share * design.PressureAltitude, share * design.Mach, 0.0)
 
-            page.Chart(
-                EnvelopeCharts.SfcLoops(
-                    "SFC against thrust, ISA",
-                    [|
-                        line 0.0 0.0
-                        line (0.5 * design.PressureAltitude) (0.75 * design.Mach)
-                        line design.PressureAltitude design.Mach
-                    |],
-                    units
-                )
-            ))
+                    if share = 1.0 || design.PressureAltitude > 0.0 || design.Mach > 0.0 then
+                        Throttle.Loop(model, flight, rating, 0.1, 25)
+            |]
+
+            page.Chart(EnvelopeCharts.ThrottleLoops(loops, units)))
 
     static member private Compressors(page: ReportPage, model: EngineModel, rating: string, units: ChartUnits) =
         page.Section "Compressors and surge margins"
         let engine = model.Engine
 
         page.Attempt(fun () ->
-            let points = EngineReport.ThrottleLine(model, 0.0, 0.0)
+            let loop =
+                Throttle.Loop(model, FlightCondition.AtIsaOffset(0.0, 0.0, 0.0), rating, 0.05, 20)
+
+            let points = [|
+                for row in loop.Rows do
+                    match row.Point with
+                    | null -> ()
+                    | point -> point
+            |]
 
             let names = [
                 if engine.HasFan then
@@ -302,14 +419,15 @@ type EngineReport private () =
                     c.Name
             ]
 
-            page.Words "Working lines static at sea level, ISA, from low lever to full."
+            page.Words
+                $"Working lines static at sea level, ISA, from a twentieth of the thrust of rating {rating} up to it."
 
             for name in names do
                 page.Chart(MapCharts.CompressorMap(engine, name, points, units)))
 
         page.Attempt(fun () ->
             let survey = SurgeSurvey.Run(model, rating)
-            page.Chart(LossCharts.SurgeBudget survey)
+            page.Chart(LossCharts.SurgeBudget(survey, units))
 
             page.Table(
                 "Thinnest surge margin of each compressor",
@@ -347,7 +465,25 @@ type EngineReport private () =
 
         page.Attempt(fun () ->
             let flight = model.Engine.Definition.Design.Flight
-            let result = Penalties.Run(model, flight, rating)
+            // A load that matters on an engine of this size.
+            let power = if model.Engine.DesignThrust > 15e3 then 100.0 else 10.0
+
+            let loads = [|
+                // What a schedule opens costs nothing where it is shut.
+                for port in model.Engine.Definition.AirPorts |> Seq.filter (_.Scheduled >> not) do
+                    {
+                        Name = $"1 %% from {port.Name}"
+                        Items = [| LoadItem.AirShare(port.Name, 0.01) |]
+                    }
+                for spool in model.DesignPoint().Spools do
+                    {
+                        Name = $"{number 0 power} kW from {spool.Name}"
+                        Items = [| LoadItem.Shaft(spool.Name, power * 1000.0<W>) |]
+                    }
+            |]
+
+            let result = Penalties.Run(model, flight, rating, loads)
+            page.Chart(LossCharts.Penalties(result, false))
 
             page.Words
                 $"At {units.AltitudeText flight.PressureAltitude}, Mach {flight.Mach:F2}, ISA {flight.IsaOffset:F0} K, on the thrust of rating {rating}; full solutions, one unit at a time."
@@ -384,7 +520,7 @@ type EngineReport private () =
                     if name.Contains "factor" then
                         { Name = name; Amount = -0.01 }
                     elif name.EndsWith("_W", StringComparison.Ordinal) then
-                        { Name = name; Amount = 1e5 }
+                        { Name = name; Amount = 1000.0 * power }
                     elif name.EndsWith("fraction", StringComparison.Ordinal) then
                         { Name = name; Amount = 0.01 }
             |]
@@ -424,8 +560,6 @@ type EngineReport private () =
         for rating in definition.Ratings do
             EngineReport.Rating(page, model, rating, units)
 
-        EngineReport.Throttle(page, model, units)
-
         // The envelope is that of a rating for flight where there is one.
         let inFlight =
             definition.Ratings
@@ -435,10 +569,13 @@ type EngineReport private () =
         match inFlight with
         | None -> ()
         | Some rating ->
+            EngineReport.Throttle(page, model, rating.Name, units)
             EngineReport.Envelope(page, model, rating.Name, units)
             EngineReport.Compressors(page, model, definition.Ratings[0].Name, units)
             EngineReport.Penalties(page, model, rating.Name, units)
 
+        page.Section "The definition as it was read"
+        page.Text source.Text
         page.Section "Provenance"
         page.Facts [ for entry in source.Provenance -> entry.Key.Replace('_', ' '), entry.Value ]
         page.Caution source.Caution

@@ -3,7 +3,10 @@ namespace CycleSim.Charts
 open System
 open System.Collections.Generic
 open System.Runtime.InteropServices
+open CycleSim.Engine
 open CycleSim.Reports
+open CycleSim.Studies
+open FSharp.Data.UnitSystems.SI.UnitSymbols
 open Plotly.NET
 
 /// A line of operating points with its name: a throttle line at one condition.
@@ -63,9 +66,13 @@ type EnvelopeCharts private () =
             | EnvelopeQuantity.T41 -> units.Temperature p.T41
             | _ -> units.Temperature p.T45
 
-    static let noteOf (units: ChartUnits) (altitude: float) (mach: float) (point: OperatingPoint | null) =
-        match point with
-        | null -> $"{units.AltitudeText altitude}, Mach {mach:F2}: no point"
+    static let hypot (x: float) (y: float) = sqrt (x * x + y * y)
+
+    static let noteOf (units: ChartUnits) (limits: Limit seq) (altitude: float) (mach: float) reason point =
+        match (point: OperatingPoint | null) with
+        | null ->
+            $"{units.AltitudeText altitude}, Mach {mach:F2}: no point"
+            + if reason = "" then "" else "<br>" + reason
         | p ->
             let thinnest =
                 p.Compressors
@@ -78,7 +85,78 @@ type EnvelopeCharts private () =
                 | Some c -> $"<br>{c.Name} is nearest to surge, {100.0 * c.SurgeMarginConstantFlow:F1} %% left"
                 | None -> ""
 
-            $"{units.AltitudeText altitude}, Mach {mach:F2}: {units.ThrustText p.NetThrust}, SFC {units.SfcText p.Sfc}<br>{units.LimitText p.Setting} sets it; T41 {units.TemperatureText p.T41}, EGT {units.TemperatureText p.T45}{margin}"
+            let governs (p: OperatingPoint) =
+                if p.Setting.Quantity = Quantity.NetThrust then
+                    "flat thrust"
+                else
+                    $"{units.LimitText p.Setting} governs"
+
+            let room limits p =
+                match units.RoomText(limits, p) with
+                | "" -> ""
+                | left -> ", " + left
+
+            $"{units.AltitudeText altitude}, Mach {mach:F2}: {units.ThrustText p.NetThrust}, SFC {units.SfcText p.Sfc}<br>{governs p}{room limits p}<br>T41 {units.TemperatureText p.T41}, EGT {units.TemperatureText p.T45}{margin}"
+
+    /// Loops with the point of least SFC of each.
+    static member private Loops
+        (title, lines: (NamedPoints * OperatingPoint)[], stars: string, missing, units: ChartUnits)
+        =
+        let sfc (p: OperatingPoint) = units.Sfc p.Sfc
+
+        let loop index (line: NamedPoints, least: OperatingPoint) = [
+            ChartStyle.series
+                line.Name
+                (line.Points |> Seq.map (fun p -> units.Thrust p.NetThrust))
+                (line.Points |> Seq.map sfc)
+                (line.Points
+                 |> Seq.map (fun p -> $"{line.Name}: " + noteOf units [] p.Flight.PressureAltitude p.Flight.Mach "" p))
+                index
+                []
+
+            ChartStyle.trace "scatter" [
+                "name", box $"{line.Name}, {stars}"
+                "showlegend", box false
+                "mode", box "markers"
+                "x", ChartStyle.numbers [ units.Thrust least.NetThrust ]
+                "y", ChartStyle.numbers [ sfc least ]
+                "text",
+                box [|
+                    $"{line.Name}: {stars}, {units.SfcText least.Sfc} at {units.ThrustText least.NetThrust}"
+                |]
+                "hovertemplate", box "%{text}<extra></extra>"
+                "marker",
+                box (ChartStyle.make [ "size", box 11; "symbol", box "star"; "color", box (ChartStyle.colour index) ])
+            ]
+        ]
+
+        // Towards no thrust SFC grows without bound; every bucket is shown to half as much again as its bottom.
+        let top =
+            lines
+            |> Seq.map (fun (line, least) -> min (line.Points |> Seq.map sfc |> Seq.max) (1.5 * sfc least))
+            |> Seq.max
+
+        let bottom = lines |> Seq.map (snd >> sfc) |> Seq.min
+
+        let most =
+            lines
+            |> Seq.collect (fun (line, _) -> line.Points)
+            |> Seq.map (fun p -> units.Thrust p.NetThrust)
+            |> Seq.max
+
+        let margin = 0.06 * (top - bottom)
+
+        ChartStyle.chart
+            title
+            [|
+                yield! lines |> Seq.mapi loop |> Seq.concat
+                ChartStyle.entry stars "star" ChartStyle.ink
+            |]
+            (ChartStyle.axis $"Net thrust, {units.ThrustUnit}" [ "range", box [| 0.0; 1.04 * most |] ])
+            (ChartStyle.axis $"SFC, {units.SfcUnit}" [ "range", box [| bottom - margin; top + margin |] ]) [
+                ChartStyle.note
+                    $"Shown up to 1.5 times the least SFC of the highest line. {missing}<br>{ChartStyle.caution}"
+            ] []
 
     /// <summary>SFC against net thrust, a loop for each line of points, the least SFC of each marked.</summary>
     /// <param name="lines">each in the order of thrust; at least one point altogether</param>
@@ -89,73 +167,128 @@ type EnvelopeCharts private () =
             lines: IReadOnlyList<NamedPoints>,
             [<Optional; DefaultParameterValue(null: ChartUnits | null)>] units: ChartUnits | null
         ) : GenericChart =
-        let units = chosen units
+        let lines =
+            lines
+            |> Seq.filter (fun l -> l.Points.Count > 0)
+            |> Seq.map (fun l -> l, l.Points |> Seq.minBy _.Sfc)
+            |> Seq.toArray
 
-        if lines |> Seq.forall (fun l -> l.Points.Count = 0) then
+        if lines.Length = 0 then
             invalidArg (nameof lines) "a chart of no points"
 
-        let traces = [|
-            for index, line in Seq.indexed lines do
-                if line.Points.Count > 0 then
-                    ChartStyle.series
-                        line.Name
-                        (line.Points |> Seq.map (fun p -> units.Thrust p.NetThrust))
-                        (line.Points |> Seq.map (fun p -> units.Sfc p.Sfc))
-                        (line.Points
-                         |> Seq.map (fun p -> $"{line.Name}: " + noteOf units p.Flight.PressureAltitude p.Flight.Mach p))
-                        index
-                        []
+        EnvelopeCharts.Loops(title, lines, "least SFC of the points", "", chosen units)
 
-                    let least = line.Points |> Seq.minBy _.Sfc
+    /// <summary>
+    /// SFC against net thrust up to a rating's thrust, a line for each loop (altitude, Mach number, temperature), the bottom of
+    /// each bucket marked where the study found it.
+    /// </summary>
+    /// <exception cref="T:System.ArgumentException">No loops.</exception>
+    static member ThrottleLoops
+        (
+            loops: IReadOnlyList<ThrottleLoop>,
+            [<Optional; DefaultParameterValue(null: ChartUnits | null)>] units: ChartUnits | null
+        ) : GenericChart =
+        if loops.Count = 0 then
+            invalidArg (nameof loops) "a chart of no loops"
 
-                    ChartStyle.trace "scatter" [
-                        "name", box "least SFC of the points"
-                        "legendgroup", box "least"
-                        "showlegend", box (index = 0)
-                        "mode", box "markers"
-                        "x", ChartStyle.numbers [ units.Thrust least.NetThrust ]
-                        "y", ChartStyle.numbers [ units.Sfc least.Sfc ]
-                        "text",
-                        box [|
-                            $"{line.Name}: least SFC of the points, {units.SfcText least.Sfc} at {units.ThrustText least.NetThrust}"
-                        |]
-                        "hovertemplate", box "%{text}<extra></extra>"
-                        "marker",
-                        box (
-                            ChartStyle.make [
-                                "size", box 10
-                                "symbol", box "star"
-                                "color", box (ChartStyle.colour index)
-                            ]
-                        )
-                    ]
+        let units = chosen units
+
+        let name (loop: ThrottleLoop) =
+            let isa =
+                if loop.IsaOffset = 0.0<K> then
+                    ""
+                else
+                    $", ISA {ChartUnits.Text(float loop.IsaOffset, 0)} K"
+
+            $"{units.AltitudeText(float loop.PressureAltitude)}, Mach {loop.Mach:F2}{isa}"
+
+        let points (loop: ThrottleLoop) = [|
+            for row in loop.Rows do
+                match row.Point with
+                | null -> ()
+                | point -> point
         |]
 
-        // Towards no thrust SFC grows without bound; the bucket is what is looked at.
-        let least = lines |> Seq.collect _.Points |> Seq.map _.Sfc |> Seq.min |> units.Sfc
+        let missing =
+            loops
+            |> Seq.collect _.Rows
+            |> Seq.filter (fun row -> isNull row.Point)
+            |> Seq.map _.Reason
+            |> ChartStyle.missing "thrusts"
 
-        ChartStyle.chart
-            title
-            traces
-            (ChartStyle.axis $"Net thrust, {units.ThrustUnit}" [])
-            (ChartStyle.axis $"SFC, {units.SfcUnit}" [ "range", box [| 0.97 * least; 1.6 * least |] ]) [
-                ChartStyle.note "Shown up to 1.6 times the least SFC; stars mark the least of the points drawn."
-            ] []
+        EnvelopeCharts.Loops(
+            $"{loops[0].Engine}: SFC against thrust, up to rating {loops[0].Rating}",
+            [|
+                for loop in loops ->
+                    {
+                        Name = name loop
+                        Points = points loop
+                    },
+                    loop.Least.Point
+            |],
+            "least SFC",
+            missing,
+            units
+        )
 
     static member private Check
-        (altitudes: IReadOnlyList<float>, machs: IReadOnlyList<float>, points: OperatingPoint[,])
-        =
-        if
-            altitudes.Count <> Array2D.length1 points
-            || machs.Count <> Array2D.length2 points
-        then
+        (
+            altitudes: IReadOnlyList<float>,
+            machs: IReadOnlyList<float>,
+            points: OperatingPoint[,],
+            reasons: string[,] | null
+        ) =
+        let fits (cells: 'a[,]) =
+            altitudes.Count = Array2D.length1 cells && machs.Count = Array2D.length2 cells
+
+        if not (fits points) then
             raise (
                 ArgumentException
                     $"{altitudes.Count} altitudes and {machs.Count} Mach numbers for {Array2D.length1 points} x {Array2D.length2 points} points"
             )
 
+        match reasons with
+        | null -> ()
+        | given when not (fits given) ->
+            raise (ArgumentException "the reasons must be as many as the points, altitude by Mach number")
+        | _ -> ()
+
         if points |> Seq.cast<OperatingPoint | null> |> Seq.forall isNull then
             raise (ArgumentException "a chart of no points")
+
+    // What the pointer shows at a place.
+    static member private Notes
+        (
+            altitudes: IReadOnlyList<float>,
+            machs: IReadOnlyList<float>,
+            points: OperatingPoint[,],
+            units: ChartUnits,
+            limits: IReadOnlyList<Limit> | null,
+            reasons: string[,] | null
+        ) : int -> int -> string =
+        let limits =
+            match limits with
+            | null -> Seq.empty
+            | given -> given
+
+        fun i j ->
+            let reason =
+                match reasons with
+                | null -> ""
+                | given -> given[i, j]
+
+            noteOf units limits altitudes[i] machs[j] reason points[i, j]
+
+    static member private Missing(points: OperatingPoint[,], reasons: string[,] | null) =
+        seq {
+            for i in 0 .. Array2D.length1 points - 1 do
+                for j in 0 .. Array2D.length2 points - 1 do
+                    if isNull (box points[i, j]) then
+                        match reasons with
+                        | null -> ""
+                        | given -> given[i, j]
+        }
+        |> ChartStyle.missing "places"
 
     /// <summary>
     /// A quantity over altitude and Mach number as a carpet: lines of equal altitude and of equal Mach number, each family named
@@ -164,6 +297,10 @@ type EnvelopeCharts private () =
     /// <param name="altitudes">pressure altitudes, m</param>
     /// <param name="machs">Mach numbers</param>
     /// <param name="points">a point (or null) for each altitude (first) and Mach number (second)</param>
+    /// <param name="units">units shown; SI where null</param>
+    /// <param name="limits">limits whose room the notes give; none where null</param>
+    /// <param name="reasons">why there is no point, as the points; unknown where null</param>
+    /// <exception cref="T:System.ArgumentException">Sizes that do not fit, or no point at all.</exception>
     static member Carpet
         (
             title: string,
@@ -171,74 +308,146 @@ type EnvelopeCharts private () =
             altitudes: IReadOnlyList<float>,
             machs: IReadOnlyList<float>,
             points: OperatingPoint[,],
-            [<Optional; DefaultParameterValue(null: ChartUnits | null)>] units: ChartUnits | null
+            [<Optional; DefaultParameterValue(null: ChartUnits | null)>] units: ChartUnits | null,
+            [<Optional; DefaultParameterValue(null: IReadOnlyList<Limit> | null)>] limits: IReadOnlyList<Limit> | null,
+            [<Optional; DefaultParameterValue(null: string[,] | null)>] reasons: string[,] | null
         ) : GenericChart =
-        EnvelopeCharts.Check(altitudes, machs, points)
+        EnvelopeCharts.Check(altitudes, machs, points, reasons)
         let units = chosen units
-        let at i j = value units quantity points[i, j]
+        let notes = EnvelopeCharts.Notes(altitudes, machs, points, units, limits, reasons)
+        let at (i, j) = value units quantity points[i, j]
         // Mach number goes to the right and altitude to the left, so that the families cross.
-        let across i j = float j - 1.3 * float i
+        let across (i, j) = float j - 1.3 * float i
 
-        let family index name' count length (place: int -> int -> int * int) group =
+        let cells = [|
+            for i in 0 .. altitudes.Count - 1 do
+                for j in 0 .. machs.Count - 1 -> i, j
+        |]
+
+        let there = cells |> Array.filter (at >> Double.IsFinite)
+
+        let room share (values: float[]) =
+            let low, high = Array.min values, Array.max values
+            let margin = share * max (high - low) (1e-6 * abs high)
+            low - margin, high + margin
+
+        let left, right = there |> Array.map across |> room 0.14
+        let bottom, top = there |> Array.map at |> room 0.12
+        // Where a cell stands in the drawing, in pixels of a usual width.
+        let pixels cell =
+            720.0 * (across cell - left) / (right - left), 340.0 * (at cell - bottom) / (top - bottom)
+
+        // A name goes beyond the end of its line, clear of the line of the other family that ends there.
+        let beside (halfWidth: float) ending before crossing =
+            let (x, y), (x0, y0), (x1, y1) = pixels ending, pixels before, pixels crossing
+
+            let ex, ey =
+                (x - x0) / (hypot (x - x0) (y - y0)), (y - y0) / (hypot (x - x0) (y - y0))
+
+            let nx, ny =
+                (y1 - y) / (hypot (x1 - x) (y1 - y)), (x - x1) / (hypot (x1 - x) (y1 - y))
+
+            let facing = ex * nx + ey * ny
+            let clear = (halfWidth * abs nx + 9.0 * abs ny + 5.0) / max 0.3 (abs facing)
+            ex * clear, ey * clear
+
+        let family
+            index
+            (title: string)
+            (names: string[])
+            (lines: (int * int)[][])
+            (neighbour: int * int -> int * int)
+            =
             [|
-                for k in 0 .. count - 1 do
-                    let cells = [| for l in 0 .. length - 1 -> place k l |]
-
+                for k, line in Array.indexed lines do
                     let trace =
                         ChartStyle.series
-                            group
-                            (cells |> Array.map (fun (i, j) -> across i j))
-                            (cells |> Array.map (fun (i, j) -> at i j))
-                            (cells
-                             |> Array.map (fun (i, j) -> noteOf units altitudes[i] machs[j] points[i, j]))
+                            title
+                            (line |> Array.map across)
+                            (line |> Array.map at)
+                            (line |> Array.map (fun (i, j) -> notes i j))
                             index
-                            [ "legendgroup", box group ]
+                            [
+                                "legendgroup", box title
+                                "line",
+                                box (
+                                    ChartStyle.make [
+                                        "color", box (ChartStyle.colour index)
+                                        "width", box 2.0
+                                        "dash", box (ChartStyle.dash index)
+                                        "shape", box "spline"
+                                    ]
+                                )
+                            ]
 
                     if k > 0 then ChartStyle.hidden trace else trace
             |],
             [|
-                for k in 0 .. count - 1 do
-                    let found =
-                        [| for l in length - 1 .. -1 .. 0 -> place k l |]
-                        |> Array.tryFind (fun (i, j) -> Double.IsFinite(at i j))
+                for k, line in Array.indexed lines do
+                    let solved = line |> Array.filter (at >> Double.IsFinite)
 
-                    match found with
-                    | Some(i, j) ->
-                        ChartStyle.label (box (across i j)) (box (at i j)) (name' k) [
-                            "xanchor", box (if index = 0 then "left" else "center")
-                            "yanchor", box (if index = 0 then "middle" else "top")
-                            "xshift", box (if index = 0 then 6 else 0)
-                            "yshift", box (if index = 0 then 0 else -6)
+                    if solved.Length > 0 then
+                        let ending = solved[solved.Length - 1]
+                        let next = neighbour ending
+
+                        let dx, dy =
+                            if solved.Length > 1 && Array.contains next there then
+                                beside (3.6 * float names[k].Length) ending solved[solved.Length - 2] next
+                            else
+                                4.0 * float names[k].Length + 6.0, 0.0
+
+                        ChartStyle.label (box (across ending)) (box (at ending)) names[k] [
+                            "xshift", box (round dx)
+                            "yshift", box (round dy)
+                            yield! ChartStyle.plate
                         ]
-                    | None -> ()
             |]
 
-        let heights, heightLabels =
+        let last = altitudes.Count - 1
+        let next limit k = if k < limit then k + 1 else k - 1
+
+        let heights, heightNames =
             family
                 0
-                (fun k -> units.AltitudeText altitudes[k])
-                altitudes.Count
-                machs.Count
-                (fun k l -> k, l)
                 "equal altitude"
+                (altitudes |> Seq.map units.AltitudeText |> Seq.toArray)
+                [| for i in 0..last -> [| for j in 0 .. machs.Count - 1 -> i, j |] |]
+                (fun (i, j) -> next last i, j)
 
-        let speeds, speedLabels =
-            family 1 (fun k -> $"M {machs[k]:F2}") machs.Count altitudes.Count (fun k l -> l, k) "equal Mach number"
+        let speeds, speedNames =
+            family
+                1
+                "equal Mach number"
+                (machs |> Seq.map (fun m -> $"M {m:F2}") |> Seq.toArray)
+                [| for j in 0 .. machs.Count - 1 -> [| for i in 0..last -> i, j |] |]
+                (fun (i, j) -> i, next (machs.Count - 1) j)
+
+        let missing = EnvelopeCharts.Missing(points, reasons)
 
         ChartStyle.chart
             title
             (Array.append heights speeds)
-            (ChartStyle.axis "" [ "showticklabels", box false; "ticks", box ""; "showgrid", box false ])
-            (ChartStyle.axis (name units quantity) []) [
-                yield! heightLabels
-                yield! speedLabels
-                ChartStyle.note "Carpet: read the value at the crossing of two lines; the scale across has no meaning."
+            (ChartStyle.axis "" [
+                "showticklabels", box false
+                "ticks", box ""
+                "showgrid", box false
+                "range", box [| left; right |]
+            ])
+            (ChartStyle.axis (name units quantity) [ "range", box [| bottom; top |] ]) [
+                yield! heightNames
+                yield! speedNames
+                ChartStyle.note
+                    $"Carpet: read the value at the crossing of two lines; the scale across has no meaning. {missing}<br>{ChartStyle.caution}"
             ] []
 
     /// <summary>A quantity over Mach number and altitude as lines of equal value; places without a point stay empty.</summary>
     /// <param name="altitudes">pressure altitudes, m, rising</param>
     /// <param name="machs">Mach numbers, rising</param>
     /// <param name="points">a point (or null) for each altitude (first) and Mach number (second)</param>
+    /// <param name="units">units shown; SI where null</param>
+    /// <param name="limits">limits whose room the notes give; none where null</param>
+    /// <param name="reasons">why there is no point, as the points; unknown where null</param>
+    /// <exception cref="T:System.ArgumentException">Sizes that do not fit, or no point at all.</exception>
     static member Map
         (
             title: string,
@@ -246,10 +455,13 @@ type EnvelopeCharts private () =
             altitudes: IReadOnlyList<float>,
             machs: IReadOnlyList<float>,
             points: OperatingPoint[,],
-            [<Optional; DefaultParameterValue(null: ChartUnits | null)>] units: ChartUnits | null
+            [<Optional; DefaultParameterValue(null: ChartUnits | null)>] units: ChartUnits | null,
+            [<Optional; DefaultParameterValue(null: IReadOnlyList<Limit> | null)>] limits: IReadOnlyList<Limit> | null,
+            [<Optional; DefaultParameterValue(null: string[,] | null)>] reasons: string[,] | null
         ) : GenericChart =
-        EnvelopeCharts.Check(altitudes, machs, points)
+        EnvelopeCharts.Check(altitudes, machs, points, reasons)
         let units = chosen units
+        let notes = EnvelopeCharts.Notes(altitudes, machs, points, units, limits, reasons)
 
         let rows (cell: int -> int -> 'a) = [|
             for i in 0 .. altitudes.Count - 1 -> [| for j in 0 .. machs.Count - 1 -> cell i j |]
@@ -265,13 +477,15 @@ type EnvelopeCharts private () =
                         let v = value units quantity points[i, j]
                         if Double.IsFinite v then box v else null)
                 )
-                "text", box (rows (fun i j -> noteOf units altitudes[i] machs[j] points[i, j]))
+                "text", box (rows notes)
                 "hovertemplate", box "%{text}<extra></extra>"
                 "colorscale",
                 box (
                     ChartStyle.scale
                     |> Array.mapi (fun k c -> [| box (float k / float (ChartStyle.scale.Length - 1)); box c |])
                 )
+                // The dark end is what deserves care: a high temperature, a thin margin.
+                "reversescale", box (quantity = EnvelopeQuantity.SurgeMargin)
                 "contours",
                 box (
                     ChartStyle.make [
@@ -289,32 +503,45 @@ type EnvelopeCharts private () =
                 )
             ]
 
+        let missing = EnvelopeCharts.Missing(points, reasons)
+
         ChartStyle.chart
             title
             [| contour |]
             (ChartStyle.axis "Mach number" [])
-            (ChartStyle.axis $"Pressure altitude, {units.AltitudeUnit}" []) [ ChartStyle.note ChartStyle.caution ] []
+            (ChartStyle.axis $"Pressure altitude, {units.AltitudeUnit}" []) [
+                ChartStyle.note $"{ChartStyle.caution} {missing}"
+            ] []
 
-    /// <summary>What sets the power over Mach number and altitude: regions of one governing limit.</summary>
+    /// <summary>
+    /// What sets the power over Mach number and altitude: regions of one governing limit, with a marker for each point.
+    /// </summary>
     /// <param name="altitudes">pressure altitudes, m, rising</param>
     /// <param name="machs">Mach numbers, rising</param>
     /// <param name="points">rated points (or null) for each altitude (first) and Mach number (second)</param>
+    /// <param name="units">units shown; SI where null</param>
+    /// <param name="limits">limits whose room the notes give; none where null</param>
+    /// <param name="reasons">why there is no point, as the points; unknown where null</param>
+    /// <exception cref="T:System.ArgumentException">Sizes that do not fit, or no point at all.</exception>
     static member Governing
         (
             title: string,
             altitudes: IReadOnlyList<float>,
             machs: IReadOnlyList<float>,
             points: OperatingPoint[,],
-            [<Optional; DefaultParameterValue(null: ChartUnits | null)>] units: ChartUnits | null
+            [<Optional; DefaultParameterValue(null: ChartUnits | null)>] units: ChartUnits | null,
+            [<Optional; DefaultParameterValue(null: IReadOnlyList<Limit> | null)>] limits: IReadOnlyList<Limit> | null,
+            [<Optional; DefaultParameterValue(null: string[,] | null)>] reasons: string[,] | null
         ) : GenericChart =
-        EnvelopeCharts.Check(altitudes, machs, points)
+        EnvelopeCharts.Check(altitudes, machs, points, reasons)
         let units = chosen units
+        let notes = EnvelopeCharts.Notes(altitudes, machs, points, units, limits, reasons)
 
         let word (point: OperatingPoint | null) =
             match point with
             | null -> "no point"
-            | p when p.Setting.Quantity = CycleSim.Engine.Quantity.NetThrust -> "flat thrust"
-            | p -> CycleSim.Engine.QuantityText.Name p.Setting.Quantity
+            | p when p.Setting.Quantity = Quantity.NetThrust -> "flat thrust"
+            | p -> $"{QuantityText.Name p.Setting.Quantity} governs"
 
         let words =
             points
@@ -324,39 +551,65 @@ type EnvelopeCharts private () =
             |> Seq.sort
             |> Seq.toArray
 
+        let kind i j = Array.IndexOf(words, word points[i, j])
+        let heights = altitudes |> Seq.map units.Altitude |> Seq.toArray
+
+        let ground =
+            let steps = float words.Length
+
+            ChartStyle.trace "heatmap" [
+                "x", box (Seq.toArray machs)
+                "y", box heights
+                "z",
+                box [|
+                    for i in 0 .. altitudes.Count - 1 -> [| for j in 0 .. machs.Count - 1 -> kind i j |]
+                |]
+                "zmin", box -0.5
+                "zmax", box (steps - 0.5)
+                "colorscale",
+                box [|
+                    for k in 0 .. words.Length - 1 do
+                        for at in [ float k / steps; float (k + 1) / steps ] ->
+                            [| box at; box (ChartStyle.of' ChartStyle.tints k) |]
+                |]
+                "showscale", box false
+                "hoverinfo", box "skip"
+            ]
+
         let traces =
             words
             |> Array.mapi (fun k w ->
                 let cells = [|
                     for i in 0 .. altitudes.Count - 1 do
                         for j in 0 .. machs.Count - 1 do
-                            if word points[i, j] = w then
+                            if kind i j = k then
                                 i, j
                 |]
 
                 ChartStyle.trace "scatter" [
                     "name", box w
+                    "showlegend", box true
                     "mode", box "markers"
                     "x", ChartStyle.numbers (cells |> Array.map (fun (_, j) -> machs[j]))
-                    "y", ChartStyle.numbers (cells |> Array.map (fun (i, _) -> units.Altitude altitudes[i]))
-                    "text",
-                    box (
-                        cells
-                        |> Array.map (fun (i, j) -> noteOf units altitudes[i] machs[j] points[i, j])
-                    )
+                    "y", ChartStyle.numbers (cells |> Array.map (fun (i, _) -> heights[i]))
+                    "text", box (cells |> Array.map (fun (i, j) -> notes i j))
                     "hovertemplate", box "%{text}<extra></extra>"
                     "marker",
                     box (
                         ChartStyle.make [
-                            "size", box 12
+                            "size", box 7
                             "symbol", box (ChartStyle.symbol k)
                             "color", box (ChartStyle.colour k)
                         ]
                     )
                 ])
 
+        let missing = EnvelopeCharts.Missing(points, reasons)
+
         ChartStyle.chart
             title
-            traces
-            (ChartStyle.axis "Mach number" [])
-            (ChartStyle.axis $"Pressure altitude, {units.AltitudeUnit}" []) [ ChartStyle.note ChartStyle.caution ] []
+            [| ground; yield! traces |]
+            (ChartStyle.axis "Mach number" [ "showgrid", box false ])
+            (ChartStyle.axis $"Pressure altitude, {units.AltitudeUnit}" [ "showgrid", box false ]) [
+                ChartStyle.note $"The ground changes half way between points. {missing}<br>{ChartStyle.caution}"
+            ] []

@@ -21,10 +21,35 @@ type LossCharts private () =
             "y", box names
             "x", ChartStyle.numbers values
             "text", box notes
-            "textposition", box "auto"
+            "textposition", box "outside"
+            "cliponaxis", box false
+            "textfont", box (ChartStyle.make [ "size", box 12; "color", box ChartStyle.ink ])
             "hovertemplate", box "%{y}: %{text}<extra></extra>"
             "marker", box (ChartStyle.make [ "color", box (ChartStyle.colour index) ])
             yield! fields
+        ]
+
+    static let zero = [
+        "zeroline", box true
+        "zerolinecolor", box ChartStyle.ink
+        "zerolinewidth", box 1.5
+    ]
+
+    // Room for the numbers beyond the ends of the bars.
+    static let across title (values: float seq) =
+        let known =
+            values |> Seq.filter Double.IsFinite |> Seq.append [ 0.0 ] |> Seq.toArray
+
+        let low, high = Array.min known, Array.max known
+        let room = 0.12 * max (high - low) 1e-9
+
+        ChartStyle.axis title [
+            yield! zero
+            "range",
+            box [|
+                (if low < 0.0 then low - room else 0.0)
+                (if high > 0.0 then high + room else 0.0)
+            |]
         ]
 
     static let categories (fields: (string * objnull) seq) =
@@ -34,12 +59,6 @@ type LossCharts private () =
             "showgrid", box false
             yield! fields
         ]
-
-    static let zero = [
-        "zeroline", box true
-        "zerolinecolor", box ChartStyle.ink
-        "zerolinewidth", box 1.5
-    ]
 
     // "sfc_kg_per_N_s" as the trade writes it.
     static let plain (output: string) =
@@ -55,25 +74,35 @@ type LossCharts private () =
         if Double.IsFinite value then
             let zeros = String('0', digits)
 
-            value.ToString($"+0.{zeros};-0.{zeros};0.{zeros}", Globalization.CultureInfo.InvariantCulture)
-            + " "
-            + unit
+            let text =
+                value.ToString($"+0.{zeros};−0.{zeros};0.{zeros}", Globalization.CultureInfo.InvariantCulture)
+
+            if unit = "" then text else text + " " + unit
         else
             "no point"
 
     /// <summary>
     /// What each named load costs: SFC at constant thrust beside thrust at the rating's limit, from full solutions, per cent.
     /// </summary>
+    /// <param name="together">whether all loads at once are shown too, where there are several</param>
     /// <exception cref="T:System.ArgumentException">No loads.</exception>
-    static member Penalties(result: PenaltiesResult) : GenericChart =
+    static member Penalties
+        (result: PenaltiesResult, [<Optional; DefaultParameterValue(true)>] together: bool)
+        : GenericChart =
         if result.Loads.Count = 0 then
             raise (ArgumentException "a chart of no loads")
 
         let loads = [|
             yield! result.Loads
-            if result.Loads.Count > 1 then
+            if together && result.Loads.Count > 1 then
                 result.Together
         |]
+
+        let without =
+            loads
+            |> Seq.collect (fun l -> [ l.AtThrust.Reason; l.AtLimit.Reason ])
+            |> Seq.filter (fun reason -> reason <> "")
+            |> ChartStyle.missing "answers"
 
         let names = loads |> Array.map _.Name
         let sfc = loads |> Array.map (fun l -> 100.0 * l.AtThrust.Full.Sfc)
@@ -91,11 +120,10 @@ type LossCharts private () =
                     3
                     []
             |]
-            (ChartStyle.axis "Change, %" zero)
-            (categories []) [ ChartStyle.note ("Full solutions, not first order. " + ChartStyle.caution) ] [
-                "barmode", box "group"
-                "bargap", box 0.3
-            ]
+            (across "Change, %" (Seq.append sfc thrust))
+            (categories []) [
+                ChartStyle.note $"Full solutions, not first order. {without}<br>{ChartStyle.caution}"
+            ] [ "barmode", box "group"; "bargap", box 0.3 ]
 
     /// <summary>From a total through what is taken off (or added) to what is left, in one unit.</summary>
     /// <param name="start">name and amount of the beginning</param>
@@ -138,8 +166,8 @@ type LossCharts private () =
         ChartStyle.chart
             title
             [| trace |]
-            (ChartStyle.axis "" [ "type", box "category" ])
-            (ChartStyle.axis $"Amount, {unit}" []) [] [ "showlegend", box false ]
+            (ChartStyle.axis "" [ "type", box "category"; "showgrid", box false ])
+            (ChartStyle.axis unit zero) [] [ "showlegend", box false ]
 
     /// <summary>
     /// What moves an output most: its relative change, per cent, for a step of each input, largest first, from exact influence
@@ -161,7 +189,13 @@ type LossCharts private () =
         if steps.Count = 0 then
             raise (ArgumentException "a tornado without steps")
 
-        let at = influence.Outputs |> Seq.findIndex (fun o -> o = output)
+        let at =
+            match influence.Outputs |> Seq.tryFindIndex (fun o -> o = output) with
+            | Some found -> found
+            | None ->
+                let known = String.concat ", " influence.Outputs
+                raise (ArgumentException $"no output '{output}' among {known}")
+
         let basis = influence.OutputValues[at]
 
         let effects =
@@ -191,7 +225,7 @@ type LossCharts private () =
                     output
                     (effects |> Array.map (fun (s, _) -> (shown s).Replace('_', ' ')))
                     values
-                    (values |> Array.map (fun v -> signed v 3 "%"))
+                    (values |> Array.map (fun v -> signed v 2 "%"))
                     0
                     [
                         "marker",
@@ -203,13 +237,23 @@ type LossCharts private () =
                         )
                     ]
             |]
-            (ChartStyle.axis $"Change of {plain output}, %% of its value" zero)
+            (across $"Change of {plain output}, %% of its value" values)
             (categories []) [
                 ChartStyle.note "First order, from exact influence coefficients; power setting held."
             ] [ "showlegend", box false ]
 
     /// <summary>Surge margin that each compressor needs, allowance by allowance, against what it has at its thinnest.</summary>
-    static member SurgeBudget(result: SurgeSurveyResult) : GenericChart =
+    /// <param name="units">units of the places in the notes; SI where null</param>
+    static member SurgeBudget
+        (
+            result: SurgeSurveyResult,
+            [<Optional; DefaultParameterValue(null: ChartUnits | null)>] units: ChartUnits | null
+        ) : GenericChart =
+        let units =
+            match units with
+            | null -> ChartUnits.SI
+            | given -> given
+
         let budgets = Seq.toArray result.Budgets
         let names = budgets |> Array.map _.Compressor
 
@@ -242,8 +286,15 @@ type LossCharts private () =
                     box (
                         ChartStyle.make [
                             "color", box (ChartStyle.colour k)
+                            "line", box (ChartStyle.make [ "color", box "white"; "width", box 1 ])
                             "pattern",
-                            box (ChartStyle.make [ "shape", box (if k < ChartStyle.colours.Length then "" else "/") ])
+                            box (
+                                ChartStyle.make [
+                                    "shape", box (ChartStyle.of' ChartStyle.fillings k)
+                                    "fillmode", box "overlay"
+                                    "size", box 7
+                                ]
+                            )
                         ]
                     )
                 ])
@@ -258,16 +309,16 @@ type LossCharts private () =
                 box (
                     budgets
                     |> Array.map (fun b ->
-                        $"{b.Compressor}: {100.0 * b.Thinnest.MarginConstantFlow:F1} %% at {float b.Thinnest.PressureAltitude:F0} m, Mach {b.Thinnest.Mach:F2}, ISA {float b.Thinnest.IsaOffset:F0} K, {100.0 * b.Thinnest.ThrustShare:F0} %% of the rating; slack {100.0 * b.Slack:F1} points")
+                        $"{b.Compressor}: {100.0 * b.Thinnest.MarginConstantFlow:F1} %% at {units.AltitudeText(float b.Thinnest.PressureAltitude)}, Mach {b.Thinnest.Mach:F2}, ISA {float b.Thinnest.IsaOffset:F0} K, {100.0 * b.Thinnest.ThrustShare:F0} %% of the rating; slack {100.0 * b.Slack:F1} points")
                 )
                 "hovertemplate", box "%{text}<extra></extra>"
                 "marker",
                 box (
                     ChartStyle.make [
-                        "size", box 16
-                        "symbol", box "line-ns-open"
+                        "size", box 15
+                        "symbol", box "diamond"
                         "color", box ChartStyle.ink
-                        "line", box (ChartStyle.make [ "width", box 4 ])
+                        "line", box (ChartStyle.make [ "width", box 2; "color", box "white" ])
                     ]
                 )
             ]
@@ -277,6 +328,8 @@ type LossCharts private () =
             [| yield! needed; available |]
             (ChartStyle.axis "Surge margin at constant flow, % of pressure ratio" zero)
             (categories []) [
-                ChartStyle.note
-                    "Bars: what is needed; random allowances by their share of the root of the sum of squares. Stroke: what there is at the thinnest."
+                ChartStyle.note (
+                    "Bars: what is needed; random allowances by their share of the root of the sum of squares. Diamond: what there is at the thinnest.<br>"
+                    + ChartStyle.caution
+                )
             ] [ "barmode", box "stack" ]

@@ -143,7 +143,7 @@ type MapCharts private () =
                 let x, y = contour scaled fine betas level
 
                 let trace =
-                    ChartStyle.guide "equal efficiency" (x |> Seq.map units.Flow) y "#b9b9b9" 1.0 "dot"
+                    ChartStyle.guide "equal efficiency" (x |> Seq.map units.Flow) y "#8c8c8c" 1.0 "dot"
 
                 trace.SetProperty("legendgroup", "efficiency")
                 if k > 0 then ChartStyle.hidden trace else trace)
@@ -194,7 +194,95 @@ type MapCharts private () =
                     "marker", box (ChartStyle.make [ "size", box 8; "color", box ChartStyle.colours[0] ])
                 ]
 
+        // What is left at constant flow, from each working point up to the surge line.
+        let margins =
+            let known =
+                reports
+                |> Array.map snd
+                |> Array.filter (fun c -> Double.IsFinite c.SurgeMarginConstantFlow)
+
+            let line = [|
+                for c in known do
+                    let flow = units.Flow c.CorrectedFlow
+                    flow, c.PressureRatio
+                    flow, c.PressureRatio * (1.0 + c.SurgeMarginConstantFlow)
+                    nan, nan
+            |]
+
+            let trace =
+                ChartStyle.guide
+                    "surge margin at constant flow"
+                    (line |> Seq.map fst)
+                    (line |> Seq.map snd)
+                    ChartStyle.colours[3]
+                    1.2
+                    "solid"
+
+            // The thinnest, and the two ends of the line, in words; the others in the notes.
+            let told =
+                if known.Length = 0 then
+                    [||]
+                else
+                    let span =
+                        (known |> Seq.map _.CorrectedFlow |> Seq.max)
+                        - (known |> Seq.map _.CorrectedFlow |> Seq.min)
+
+                    // The thinnest always, the ends where they stand clear of it.
+                    [
+                        known |> Array.minBy _.SurgeMarginConstantFlow
+                        Array.head known
+                        Array.last known
+                    ]
+                    |> List.fold
+                        (fun (kept: CompressorReport list) c ->
+                            let clear (k: CompressorReport) =
+                                abs (k.CorrectedFlow - c.CorrectedFlow) > 0.2 * span
+
+                            if List.forall clear kept then c :: kept else kept)
+                        []
+                    |> List.toArray
+
+            let words =
+                told
+                |> Array.map (fun c ->
+                    ChartStyle.label
+                        (box (units.Flow c.CorrectedFlow))
+                        (box c.PressureRatio)
+                        (ChartUnits.Text(100.0 * c.SurgeMarginConstantFlow, 1) + " %")
+                        [
+                            "xanchor", box "left"
+                            "yanchor", box "top"
+                            "xshift", box 5
+                            "yshift", box -5
+                            yield! ChartStyle.plate
+                        ])
+
+            trace, words, known.Length
+
+        let marginLines, marginWords, withMargin = margins
+
+        let efficiencyNames = [|
+            for level in levels do
+                let x, y = contour scaled fine betas level
+
+                if x.Count > 0 then
+                    let furthest =
+                        Seq.init x.Count id
+                        |> Seq.filter (fun k -> Double.IsFinite x[k])
+                        |> Seq.maxBy (fun k -> x[k])
+
+                    ChartStyle.label (box (units.Flow x[furthest])) (box y[furthest]) $"{100.0 * level:F0} %%" [
+                        "font", box (ChartStyle.make [ "size", box 12; "color", box "#6a6a6a" ])
+                        "xanchor", box "left"
+                        "xshift", box 2
+                        yield! ChartStyle.plate
+                    ]
+        |]
+
         let labels = [
+            yield! efficiencyNames
+            yield! marginWords
+
             for speed in speeds do
                 if abs (speed * 10.0 - round (speed * 10.0)) < 1e-9 then
                     let top = read scaled speed 1.0
@@ -212,6 +300,8 @@ type MapCharts private () =
                 yield! islands
                 yield! speedLines
                 surgeLine
+                if withMargin > 0 then
+                    marginLines
                 if reports.Length > 0 then
                     working
             |]
@@ -219,5 +309,5 @@ type MapCharts private () =
             (ChartStyle.axis "Total pressure ratio" []) [
                 yield! labels
                 ChartStyle.note
-                    $"Lines of equal efficiency every 2 points, the highest shown {100.0 * levels[0]:F0} %%. Margins are as good as the map."
+                    $"Lines of equal isentropic efficiency in per cent, every 2 points. Margins are as good as the map.<br>{ChartStyle.caution}"
             ] []

@@ -60,25 +60,46 @@ type PointCharts private () =
         let bypass =
             Seq.append fanFace (point.Stations |> Seq.filter isBypass) |> Seq.toArray
 
-        // Stations that all but coincide in the drawing share the first one's label.
+        // Stations that all but coincide in the drawing share a label.
         let width = (core |> Seq.map x |> Seq.max) - (core |> Seq.map x |> Seq.min)
         let height = (core |> Seq.map y |> Seq.max) - (core |> Seq.map y |> Seq.min)
 
         let apart (a: StationReport) (b: StationReport) =
             abs (x a - x b) > 0.02 * width || abs (y a - y b) > 0.04 * height
 
-        let labelled =
-            point.Stations
-            |> Seq.fold (fun kept s -> if kept |> List.forall (apart s) then s :: kept else kept) []
+        let groups (stations: StationReport[]) =
+            stations
+            |> Array.fold
+                (fun (groups: StationReport list list) s ->
+                    match groups |> List.tryFindIndex (fun g -> not (apart (List.last g) s)) with
+                    | Some k -> groups |> List.mapi (fun i g -> if i = k then s :: g else g)
+                    | None -> [ s ] :: groups)
+                []
+
+        // On the free side of the line: compression and expansion run up and down, combustion to the right.
+        let side (first: StationReport) =
+            if isBypass first then -9, 12
+            elif first.Number = "3" then -12, 10
+            elif first.Number = "4" then 10, 8
+            elif first.Number.StartsWith '4' then -10, -9
+            else 10, -9
 
         let labels =
-            labelled
-            |> Seq.map (fun s ->
-                ChartStyle.label (box (x s)) (box (y s)) s.Number [
-                    "xanchor", box (if isBypass s then "right" else "left")
-                    "xshift", box (if isBypass s then -7 else 7)
-                    "yshift", box 7
-                ])
+            Seq.append (groups core) (bypass |> Array.filter isBypass |> groups)
+            |> Seq.map (fun group ->
+                let first = List.last group
+                let right, up = side first
+
+                ChartStyle.label
+                    (box (x first))
+                    (box (y first))
+                    (group |> List.rev |> List.map _.Number |> String.concat ", ")
+                    [
+                        "xanchor", box (if right < 0 then "right" else "left")
+                        "xshift", box right
+                        "yshift", box up
+                        yield! ChartStyle.plate
+                    ])
 
         ChartStyle.chart
             $"Temperature over entropy: {titleOf units point}"
@@ -90,7 +111,8 @@ type PointCharts private () =
             (ChartStyle.axis "Specific entropy above station 2, kJ/(kg K)" [])
             (ChartStyle.axis $"Total temperature, {units.TemperatureUnit}" []) [
                 yield! labels
-                ChartStyle.note "Stations as in SAE AS755; total states."
+                ChartStyle.note
+                    "Stations as in SAE AS755; total states. The lines join stations and are not the path within a component."
             ] []
 
     /// <summary>Total pressure (logarithmic) and total temperature along the stations.</summary>
@@ -125,6 +147,18 @@ type PointCharts private () =
                         ChartStyle.hidden trace
         |]
 
+        // A digit a decade is not enough to read by: 1, 2 and 5 of each.
+        let pressures = point.Stations |> Seq.map (fun s -> units.Pressure s.TotalPressure)
+        let decade value = int (floor (log10 value))
+
+        let ticks = [|
+            for power in decade (Seq.min pressures) .. decade (Seq.max pressures) do
+                for digit in [ 1.0; 2.0; 5.0 ] -> digit * 10.0 ** float power
+        |]
+
+        let tickText (value: float) =
+            ChartUnits.Text(value, max 0 (-(decade (value * 1.0001))))
+
         ChartStyle.chart
             $"Stations: {titleOf units point}"
             [|
@@ -132,7 +166,14 @@ type PointCharts private () =
                 yield! lines "total temperature" (fun s -> units.Temperature s.TotalTemperature) 1 "y2"
             |]
             (ChartStyle.axis "Station (SAE AS755)" [ "type", box "category" ])
-            (ChartStyle.axis $"Total pressure, {units.PressureUnit}" [ "type", box "log"; "dtick", box "D1" ]) [] [
+            (ChartStyle.axis $"Total pressure, {units.PressureUnit}" [
+                "type", box "log"
+                "tickmode", box "array"
+                "tickvals", box ticks
+                "ticktext", box (ticks |> Array.map tickText)
+            ]) [
+                ChartStyle.note "Core stations first, then those of the bypass stream; total states."
+            ] [
                 "yaxis2",
                 box (
                     ChartStyle.axis $"Total temperature, {units.TemperatureUnit}" [
@@ -141,6 +182,7 @@ type PointCharts private () =
                         "showgrid", box false
                     ]
                 )
-                "legend", box (ChartStyle.make [ "x", box 0.02; "y", box 0.98 ])
-                "margin", box (ChartStyle.make [ "l", box 80; "r", box 80; "t", box 70; "b", box 80 ])
+                "legend",
+                box (ChartStyle.make [ "orientation", box "h"; "x", box 0.0; "y", box 1.02; "yanchor", box "bottom" ])
+                "margin", box (ChartStyle.make [ "l", box 80; "r", box 80; "t", box 90; "b", box 135 ])
             ]

@@ -31,20 +31,10 @@ type RatingCharts private () =
     static let key (names: string[]) =
         names
         |> Array.mapi (fun k name ->
-            ChartStyle.trace "scatter" [
-                "name", box (if name = "flat" then "flat thrust" else $"held by {name}")
-                "mode", box "markers"
-                "x", ChartStyle.numbers [ nan ]
-                "y", ChartStyle.numbers [ nan ]
-                "marker",
-                box (
-                    ChartStyle.make [
-                        "size", box 8
-                        "color", box ChartStyle.ink
-                        "symbol", box (ChartStyle.symbol k)
-                    ]
-                )
-            ])
+            ChartStyle.entry
+                (if name = "flat" then "flat thrust" else $"{name} governs")
+                (ChartStyle.symbol k)
+                ChartStyle.ink)
 
     static let governingOf (rows: seq<string>) =
         rows
@@ -95,7 +85,10 @@ type RatingCharts private () =
                     + (if row.Governing = "flat" then
                            "flat"
                        else
-                           $"{units.LimitText point.Setting} holds it")
+                           $"{units.LimitText point.Setting} governs")
+                    + (match units.RoomText(result.Limits, point) with
+                       | "" -> ""
+                       | room -> ", " + room)
                     + $"<br>N1 {100.0 * point.Spools[0].RelativeSpeed:F1} %%, EPR {point.EnginePressureRatio:F3}, T41 {units.TemperatureText point.T41}, EGT (T45) {units.TemperatureText point.T45}"
             |]
 
@@ -145,32 +138,66 @@ type RatingCharts private () =
                     [
                         "xanchor", box "left"
                         "yanchor", box "bottom"
-                        "xshift", box 4
-                        "yshift", box 3
+                        "xshift", box 6
+                        "yshift", box 5
+                        yield! ChartStyle.plate
                     ])
 
-        let without =
-            results
-            |> Seq.sumBy (fun r -> r.Rows |> Seq.filter (fun row -> isNull row.Point) |> Seq.length)
+        let corners =
+            ChartStyle.trace "scatter" [
+                "name", box "break"
+                "mode", box "markers"
+                "x",
+                results
+                |> Seq.map (fun r -> units.Temperature(float r.BreakTemperature))
+                |> ChartStyle.numbers
+                "y",
+                results
+                |> Seq.map (fun r -> units.Thrust(float r.FlatThrust))
+                |> ChartStyle.numbers
+                "hoverinfo", box "skip"
+                "marker",
+                box (
+                    ChartStyle.make [
+                        "size", box 15
+                        "symbol", box "circle-open"
+                        "color", box ChartStyle.ink
+                        "line", box (ChartStyle.make [ "width", box 1.5 ])
+                    ]
+                )
+            ]
 
         let missing =
-            if without > 0 then
-                $" {without} temperatures have no point and are left out."
-            else
-                ""
+            results
+            |> Seq.collect _.Rows
+            |> Seq.filter (fun row -> isNull row.Point)
+            |> Seq.map _.Reason
+            |> ChartStyle.missing "temperatures"
 
         ChartStyle.chart
             $"{results[0].Engine}, rating {results[0].Rating}: net thrust against outside temperature"
-            [| yield! results |> Seq.mapi line |> Seq.concat; yield! key names |]
+            [| yield! results |> Seq.mapi line |> Seq.concat; corners; yield! key names |]
             (ChartStyle.axis $"Outside air temperature, {units.TemperatureUnit}" [])
             (ChartStyle.axis $"Net thrust, {units.ThrustUnit}" []) [
                 yield! breaks
-                ChartStyle.note $"The temperature at each corner is the break.{missing} {ChartStyle.caution}"
+                ChartStyle.note $"The temperature at each corner is the break. {missing}<br>{ChartStyle.caution}"
             ] []
 
     static member private Setting
-        (table: PowerTable, what: string, value: OperatingPoint -> float, text: float -> string, units: ChartUnits)
-        : GenericChart =
+        (
+            table: PowerTable,
+            name: string,
+            what: string,
+            value: OperatingPoint -> float,
+            text: float -> string,
+            units: ChartUnits
+        ) : GenericChart =
+        let missing =
+            table.Cells
+            |> Seq.filter (fun c -> isNull c.Point)
+            |> Seq.map _.Reason
+            |> ChartStyle.missing "cells"
+
         let names = table.Rows |> Seq.concat |> Seq.map _.Governing |> governingOf
 
         let column k = [
@@ -192,11 +219,14 @@ type RatingCharts private () =
                     (cells |> Array.map (fun (_, p) -> value p))
                     (cells
                      |> Array.map (fun (c, p) ->
-                         $"{where}, {units.TemperatureText(float c.OutsideTemperature)}: {what} {text (value p)}, {units.ThrustText p.NetThrust}<br>"
+                         $"{where}, {units.TemperatureText(float c.OutsideTemperature)}: {name} {text (value p)}, {units.ThrustText p.NetThrust}<br>"
                          + (if c.Governing = "flat" then
                                 "flat thrust"
                             else
-                                $"held by {c.Governing}")))
+                                $"{units.LimitText p.Setting} governs")
+                         + (match units.RoomText(table.Limits, p) with
+                            | "" -> ""
+                            | room -> ", " + room)))
                     k
                     [
                         "mode", box "lines+markers"
@@ -205,14 +235,17 @@ type RatingCharts private () =
         ]
 
         ChartStyle.chart
-            $"Rating {table.Rating}: {what} to set against outside temperature"
+            $"Rating {table.Rating}: {name} to set against outside temperature"
             [|
                 for k in 0 .. table.Altitudes.Count - 1 do
                     yield! column k
                 yield! key names
             |]
             (ChartStyle.axis $"Outside air temperature, {units.TemperatureUnit}" [])
-            (ChartStyle.axis what []) [ ChartStyle.note ChartStyle.caution ] []
+            (ChartStyle.axis what []) [
+                ChartStyle.note
+                    $"Lines join the cells of the table; the break lies between two of them. {missing}<br>{ChartStyle.caution}"
+            ] []
 
     /// N1 (per cent of design) of a rating against outside temperature, a line for each pressure altitude.
     static member PowerSettingN1
@@ -220,9 +253,10 @@ type RatingCharts private () =
         : GenericChart =
         RatingCharts.Setting(
             table,
+            "N1",
             "N1, % of design",
             (fun p -> 100.0 * p.Spools[0].RelativeSpeed),
-            (fun v -> ChartUnits.Text(v, 1)),
+            (fun v -> ChartUnits.Text(v, 1) + " %"),
             chosen units
         )
 
@@ -232,6 +266,7 @@ type RatingCharts private () =
         : GenericChart =
         RatingCharts.Setting(
             table,
+            "EPR",
             "EPR (P5/P2)",
             (fun p -> p.EnginePressureRatio),
             (fun v -> ChartUnits.Text(v, 3)),

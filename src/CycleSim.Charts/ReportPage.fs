@@ -33,7 +33,9 @@ th.t,td.t{text-align:left}
 tbody tr:nth-child(5n){border-bottom:1px solid #e3e3e3}
 pre{font-size:.82em;line-height:1.35;background:#f7f7f7;padding:1em;overflow-x:auto}
 small,.note{color:#555}
-@media print{body{margin:0;max-width:none}h2{break-after:avoid}.cyclesim-chart,table{break-inside:avoid}nav{display:none}}
+@page{size:A4;margin:14mm}
+@media print{body{margin:0;max-width:none;font-size:10pt}h2,h3{break-after:avoid}.cyclesim-chart{break-inside:avoid;zoom:.68}
+tr{break-inside:avoid}thead{display:table-header-group}pre{white-space:pre-wrap}.modebar{display:none}}
 """
 
     member _.Section(name: string) =
@@ -54,8 +56,7 @@ small,.note{color:#555}
     member _.Caution(text: string) =
         add $"<p class=\"caution\">{escaped text}</p>"
 
-    member _.Text(summary: string, text: string) =
-        add $"<details><summary>{escaped summary}</summary><pre>{escaped text}</pre></details>"
+    member _.Text(text: string) = add $"<pre>{escaped text}</pre>"
 
     /// A table whose first `texts` columns are words, the others numbers.
     member _.Table(caption: string, texts: int, head: string list, rows: string list seq) =
