@@ -106,11 +106,17 @@ module internal ChartStyle =
         if all.Length = 0 then
             ""
         else
+            let more =
+                if told.Length > 3 then
+                    $"; {told.Length - 3} other reasons"
+                else
+                    ""
+
             let why =
                 if told.Length = 0 then
                     ""
                 else
-                    ": " + String.concat " " told
+                    ": " + (told |> Seq.truncate 3 |> String.concat "; ") + more
 
             $"{all.Length} {what} left out{why}"
 
@@ -146,8 +152,21 @@ module internal ChartStyle =
     /// Keeps a word readable where lines pass behind it.
     let plate: (string * objnull) seq = [ "bgcolor", box "rgba(255,255,255,0.85)"; "borderpad", box 1 ]
 
+    // Lines that fit under the drawing.
+    let private wrapped (text: string) =
+        let add (lines: string list) (word: string) =
+            match lines with
+            | line :: before when line.Length + word.Length < 125 ->
+                (if line = "" then word else line + " " + word) :: before
+            | _ -> word :: lines
+
+        text.Split([| ' ' |], StringSplitOptions.RemoveEmptyEntries)
+        |> Array.fold add [ "" ]
+        |> List.rev
+        |> String.concat "<br>"
+
     let note (text: string) =
-        label (box 0.0) (box -0.24) text [
+        label (box 0.0) (box -0.24) (wrapped text) [
             "xref", box "paper"
             "yref", box "paper"
             "xanchor", box "left"
@@ -155,6 +174,9 @@ module internal ChartStyle =
             "align", box "left"
             "font", box (make [ "size", box 12; "color", box "#555555" ])
         ]
+
+    /// The caution stands first: it is never what runs out of the drawing.
+    let cautioned (text: string) = note (caution + " " + text)
 
     /// Puts traces into one chart with the common look.
     let chart

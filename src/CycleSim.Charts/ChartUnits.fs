@@ -82,6 +82,10 @@ type ChartUnits(us: bool, celsius: bool) =
         + " "
         + units.ThrustUnit
 
+    member internal _.ThrustDigits = if us then 0 else 2
+
+    member internal _.FuelFlowDigits = if us then 1 else 4
+
     member units.AltitudeText metres =
         ChartUnits.Text(units.Altitude metres, 0) + " " + units.AltitudeUnit
 

@@ -26,6 +26,14 @@ type EngineReport private () =
     static let number digits (value: float) = ChartUnits.Text(value, digits)
     static let percent digits (value: float) = ChartUnits.Text(100.0 * value, digits)
 
+
+    // "1.4e-16"; nothing at all is said so.
+    static let power10 (value: float) =
+        if value = 0.0 then
+            "nothing"
+        else
+            value.ToString("0.0e0", Globalization.CultureInfo.InvariantCulture)
+
     static member private Definition(page: ReportPage, engine: SizedEngine, units: ChartUnits, source: ReportSource) =
         let d = engine.Definition
         page.Section "Definition"
@@ -82,8 +90,8 @@ type EngineReport private () =
                              | AirDestination.BypassDuct -> "bypass duct"
                              | AirDestination.Vane -> $"{p.Turbine} vane"
                              | _ -> $"{p.Turbine} rotor")
-                            percent 2 p.Fraction
-                            number 2 (units.Flow p.Flow)
+                            (if p.Fraction > 0.0 then percent 2 p.Fraction else "–")
+                            (if p.Flow > 0.0 then number 2 (units.Flow p.Flow) else "–")
                             (if p.NormallyShut then
                                  "shut"
                              elif p.Scheduled then
@@ -181,7 +189,7 @@ type EngineReport private () =
                         number 3 n.PressureRatio
                         number 1 n.ExitSpeed
                         number 4 n.EffectiveArea
-                        number 2 (units.Thrust n.GrossThrust)
+                        number units.ThrustDigits (units.Thrust n.GrossThrust)
                         (if n.Choked then "yes" else "no")
                     ]
             ]
@@ -194,13 +202,14 @@ type EngineReport private () =
         page.Facts [
             "net thrust", units.ThrustText p.NetThrust
             "installed thrust", units.ThrustText p.InstalledThrust
-            "fuel flow", $"{number 4 (units.FuelFlow p.FuelFlow)} {units.FuelFlowUnit}"
+            "fuel flow", $"{number units.FuelFlowDigits (units.FuelFlow p.FuelFlow)} {units.FuelFlowUnit}"
             "SFC", units.SfcText p.Sfc
             "overall pressure ratio P3/P2", number 2 p.OverallPressureRatio
             "EPR P5/P2", number 4 p.EnginePressureRatio
             "thermal, propulsive, overall efficiency",
             $"{percent 1 p.ThermalEfficiency}, {percent 1 p.PropulsiveEfficiency}, {percent 1 p.OverallEfficiency} %%"
-            "audit", $"mass and energy close to {p.Audit.LargestImbalance:E1}, equations to {p.Outcome.Residual:E1}"
+            "audit",
+            $"mass and energy close to {power10 p.Audit.LargestImbalance}, equations to {power10 p.Outcome.Residual}"
         ]
 
         page.Table(
@@ -268,7 +277,8 @@ type EngineReport private () =
             [| for feet in [ 0.0; 2000.0; 5000.0; 8000.0 ] -> struct (feet * 0.3048, 0.0) |]
         else
             [|
-                for less in [ 3000.0; 1500.0; 0.0 ] -> struct (max 0.0 (design.PressureAltitude - less), design.Mach)
+                for feet in [ 10000.0; 5000.0; 0.0 ] ->
+                    struct (max 0.0 (design.PressureAltitude - feet * 0.3048), design.Mach)
             |]
 
     static member private Rating(page: ReportPage, model: EngineModel, rating: RatingDefinition, units: ChartUnits) =
@@ -305,7 +315,7 @@ type EngineReport private () =
                         [
                             number 0 (units.Altitude(float r.PressureAltitude))
                             number 2 r.Mach
-                            number 2 (units.Thrust(float r.FlatThrust))
+                            number units.ThrustDigits (units.Thrust(float r.FlatThrust))
                             number 1 (units.Temperature(float r.BreakTemperature))
                             number 1 (float r.BreakIsaOffset)
                             QuantityText.Name r.BreakLimit.Quantity

@@ -154,8 +154,7 @@ type EnvelopeCharts private () =
             |]
             (ChartStyle.axis $"Net thrust, {units.ThrustUnit}" [ "range", box [| 0.0; 1.04 * most |] ])
             (ChartStyle.axis $"SFC, {units.SfcUnit}" [ "range", box [| bottom - margin; top + margin |] ]) [
-                ChartStyle.note
-                    $"Shown up to 1.5 times the least SFC of the highest line. {missing}<br>{ChartStyle.caution}"
+                ChartStyle.cautioned $"Shown up to 1.5 times the least SFC of the highest line. {missing}"
             ] []
 
     /// <summary>SFC against net thrust, a loop for each line of points, the least SFC of each marked.</summary>
@@ -436,8 +435,8 @@ type EnvelopeCharts private () =
             (ChartStyle.axis (name units quantity) [ "range", box [| bottom; top |] ]) [
                 yield! heightNames
                 yield! speedNames
-                ChartStyle.note
-                    $"Carpet: read the value at the crossing of two lines; the scale across has no meaning. {missing}<br>{ChartStyle.caution}"
+                ChartStyle.cautioned
+                    $"Carpet: read the value at the crossing of two lines; the scale across has no meaning. {missing}"
             ] []
 
     /// <summary>A quantity over Mach number and altitude as lines of equal value; places without a point stay empty.</summary>
@@ -509,9 +508,7 @@ type EnvelopeCharts private () =
             title
             [| contour |]
             (ChartStyle.axis "Mach number" [])
-            (ChartStyle.axis $"Pressure altitude, {units.AltitudeUnit}" []) [
-                ChartStyle.note $"{ChartStyle.caution} {missing}"
-            ] []
+            (ChartStyle.axis $"Pressure altitude, {units.AltitudeUnit}" []) [ ChartStyle.cautioned missing ] []
 
     /// <summary>
     /// What sets the power over Mach number and altitude: regions of one governing limit, with a marker for each point.
@@ -611,5 +608,5 @@ type EnvelopeCharts private () =
             [| ground; yield! traces |]
             (ChartStyle.axis "Mach number" [ "showgrid", box false ])
             (ChartStyle.axis $"Pressure altitude, {units.AltitudeUnit}" [ "showgrid", box false ]) [
-                ChartStyle.note $"The ground changes half way between points. {missing}<br>{ChartStyle.caution}"
+                ChartStyle.cautioned $"The ground changes half way between points. {missing}"
             ] []

@@ -41,7 +41,7 @@ type LossCharts private () =
             values |> Seq.filter Double.IsFinite |> Seq.append [ 0.0 ] |> Seq.toArray
 
         let low, high = Array.min known, Array.max known
-        let room = 0.12 * max (high - low) 1e-9
+        let room = 0.16 * max (high - low) 1e-9
 
         ChartStyle.axis title [
             yield! zero
@@ -72,11 +72,7 @@ type LossCharts private () =
 
     static let signed (value: float) (digits: int) (unit: string) =
         if Double.IsFinite value then
-            let zeros = String('0', digits)
-
-            let text =
-                value.ToString($"+0.{zeros};−0.{zeros};0.{zeros}", Globalization.CultureInfo.InvariantCulture)
-
+            let text = (if value > 0.0 then "+" else "") + ChartUnits.Text(value, digits)
             if unit = "" then text else text + " " + unit
         else
             "no point"
@@ -121,9 +117,10 @@ type LossCharts private () =
                     []
             |]
             (across "Change, %" (Seq.append sfc thrust))
-            (categories []) [
-                ChartStyle.note $"Full solutions, not first order. {without}<br>{ChartStyle.caution}"
-            ] [ "barmode", box "group"; "bargap", box 0.3 ]
+            (categories []) [ ChartStyle.cautioned $"Full solutions, not first order. {without}" ] [
+                "barmode", box "group"
+                "bargap", box 0.3
+            ]
 
     /// <summary>From a total through what is taken off (or added) to what is left, in one unit.</summary>
     /// <param name="start">name and amount of the beginning</param>
@@ -138,6 +135,7 @@ type LossCharts private () =
             raise (ArgumentException "a waterfall without changes")
 
         let left = start.Amount + (changes |> Seq.sumBy _.Amount)
+        let digits = if abs start.Amount >= 1000.0 then 0 else 2
         let names = [| start.Name; yield! changes |> Seq.map _.Name; last |]
 
         let trace =
@@ -148,9 +146,9 @@ type LossCharts private () =
                 "y", ChartStyle.numbers [ start.Amount; yield! changes |> Seq.map _.Amount; left ]
                 "text",
                 box [|
-                    ChartUnits.Text(start.Amount, 2)
-                    yield! changes |> Seq.map (fun c -> signed c.Amount 2 "")
-                    ChartUnits.Text(left, 2)
+                    ChartUnits.Text(start.Amount, digits)
+                    yield! changes |> Seq.map (fun c -> signed c.Amount digits "")
+                    ChartUnits.Text(left, digits)
                 |]
                 "textposition", box "outside"
                 "hovertemplate", box $"%%{{x}}: %%{{text}} {unit}<extra></extra>"
@@ -201,7 +199,8 @@ type LossCharts private () =
         let effects =
             steps
             |> Seq.map (fun s -> s, 100.0 * influence.Of(output, s.Name) * s.Amount / basis)
-            |> Seq.filter (fun (_, e) -> e <> 0.0)
+            // What would be written as nothing is left out.
+            |> Seq.filter (fun (_, e) -> abs e >= 0.005)
             |> Seq.sortByDescending (fun (_, e) -> abs e)
             |> Seq.truncate most
             |> Seq.toArray
@@ -328,8 +327,6 @@ type LossCharts private () =
             [| yield! needed; available |]
             (ChartStyle.axis "Surge margin at constant flow, % of pressure ratio" zero)
             (categories []) [
-                ChartStyle.note (
-                    "Bars: what is needed; random allowances by their share of the root of the sum of squares. Diamond: what there is at the thinnest.<br>"
-                    + ChartStyle.caution
-                )
+                ChartStyle.cautioned
+                    "Bars: what is needed; random allowances by their share of the root of the sum of squares. Diamond: what there is at the thinnest."
             ] [ "barmode", box "stack" ]

@@ -308,6 +308,6 @@ type MapCharts private () =
             (ChartStyle.axis $"Corrected flow, {units.FlowUnit}" [])
             (ChartStyle.axis "Total pressure ratio" []) [
                 yield! labels
-                ChartStyle.note
-                    $"Lines of equal isentropic efficiency in per cent, every 2 points. Margins are as good as the map.<br>{ChartStyle.caution}"
+                ChartStyle.cautioned
+                    $"Lines of equal isentropic efficiency in per cent, every 2 points. Per cent beside working points: surge margin at constant flow, as good as the map."
             ] []

@@ -180,7 +180,7 @@ type RatingCharts private () =
             (ChartStyle.axis $"Outside air temperature, {units.TemperatureUnit}" [])
             (ChartStyle.axis $"Net thrust, {units.ThrustUnit}" []) [
                 yield! breaks
-                ChartStyle.note $"The temperature at each corner is the break. {missing}<br>{ChartStyle.caution}"
+                ChartStyle.cautioned $"The temperature at each corner is the break. {missing}"
             ] []
 
     static member private Setting
@@ -243,8 +243,7 @@ type RatingCharts private () =
             |]
             (ChartStyle.axis $"Outside air temperature, {units.TemperatureUnit}" [])
             (ChartStyle.axis what []) [
-                ChartStyle.note
-                    $"Lines join the cells of the table; the break lies between two of them. {missing}<br>{ChartStyle.caution}"
+                ChartStyle.cautioned $"Lines join the cells of the table; the break lies between two of them. {missing}"
             ] []
 
     /// N1 (per cent of design) of a rating against outside temperature, a line for each pressure altitude.
