@@ -17,6 +17,11 @@ internal sealed class PowerSetting
         "Power of a rating of the definition, for instance take-off."
     );
 
+    private readonly Option<bool> _idle = new("--idle")
+    {
+        Description = "Idle, on the ground or in flight: the core speed at which the definition's control holds it.",
+    };
+
     private readonly Choice[] _choices =
     [
         Of("--thrust", "Net thrust, for instance \"100 kN\".", Quantity.NetThrust, Dimension.Force),
@@ -48,6 +53,7 @@ internal sealed class PowerSetting
     {
         _hasRating = rating;
         command.Add(_design);
+        command.Add(_idle);
         if (rating)
             command.Add(_rating);
         foreach (var choice in _choices)
@@ -62,9 +68,11 @@ internal sealed class PowerSetting
             given.Add(_rating.Name);
         if (result.GetValue(_design))
             given.Add(_design.Name);
+        if (result.GetValue(_idle))
+            given.Add(_idle.Name);
         if (given.Count == 0)
             throw new UsageException(
-                $"say at what power: --design, {(_hasRating ? "--rating, " : "")}{string.Join(", ", _choices.Select(c => c.Option.Name))}."
+                $"say at what power: --design, --idle, {(_hasRating ? "--rating, " : "")}{string.Join(", ", _choices.Select(c => c.Option.Name))}."
             );
         if (given.Count > 1)
             throw new UsageException($"{string.Join(" and ", given)} each set the power; use one of them.");
@@ -79,6 +87,8 @@ internal sealed class PowerSetting
         var flight = common.Flight(result);
         var inputs = model.Inputs(flight);
         common.Loads(result, model.Engine)(inputs);
+        if (result.GetValue(_idle))
+            return model.AtIdle(flight, inputs);
         if (Rating(result) is { } name)
             return model.AtRating(flight, model.Rating(name), inputs);
         var choice = _choices.Single(c => result.GetValue(c.Option) is not null);

@@ -124,6 +124,7 @@ internal sealed class DefinitionBuilder(List<TomlTableNode> nodes, string source
             {
                 IdleSpeed = control.Number("idle_speed", 0.30),
                 FullSpeed = control.Number("full_speed", 1.05),
+                IdleCoreSpeed = control.Number("idle_core_speed", 0.0),
             },
             Ratings = builtRatings,
         };

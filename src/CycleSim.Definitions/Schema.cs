@@ -783,6 +783,14 @@ internal static class Schema
                     Default: "105 %",
                     Example: "\"105 %\""
                 ),
+                new(
+                    "idle_core_speed",
+                    Dimension.Share,
+                    "Speed of the last spool, over design, at which the control holds the engine at idle, on the ground and in flight; without it there is no idle to ask for.",
+                    0.2,
+                    1,
+                    Example: "\"65 %\""
+                ),
             ]
         ),
         new(

@@ -286,6 +286,12 @@ public sealed record ControlDefinition
     public double IdleSpeed { get; init; } = 0.30;
 
     public double FullSpeed { get; init; } = 1.05;
+
+    /// <summary>
+    /// Speed of the last (high-pressure) spool, relative to design, at which the control holds the engine at idle, on the ground and
+    /// in flight; 0 where it is not known.
+    /// </summary>
+    public double IdleCoreSpeed { get; init; }
 }
 
 /// <summary>A rating: how much thrust may be taken.</summary>

@@ -69,6 +69,21 @@ public sealed class EngineModel
     }
 
     /// <summary>
+    /// Idle, on the ground or in flight: the high-pressure spool held at the idle speed of the definition. Its thrust may be
+    /// negative in flight.
+    /// </summary>
+    /// <exception cref="NoSolutionException">No such point, or a definition without an idle speed of the core.</exception>
+    public OperatingPoint AtIdle(in FlightCondition flight, double[]? inputs = null)
+    {
+        var speed = Engine.Definition.Control.IdleCoreSpeed;
+        return speed > 0.0
+            ? At(flight, Quantity.N1 + (Engine.Spools.Length - 1), speed, inputs)
+            : throw new NoSolutionException(
+                $"{Engine.Definition.Name} gives no idle_core_speed in [control]; say the power by a speed instead."
+            );
+    }
+
+    /// <summary>
     /// The point just after a step of fuel at a point of this engine: speeds and inputs as they were, fuel flow times
     /// <paramref name="fuelRatio"/>. What the turbines then give beyond what the compressors take stands in the spools' offtake.
     /// </summary>
