@@ -103,22 +103,22 @@ module internal ChartStyle =
         let all = Seq.toArray reasons
         let told = all |> Array.filter (fun r -> r <> "") |> Array.distinct
 
+        let more =
+            if told.Length > 3 then
+                $"; {told.Length - 3} other reasons"
+            else
+                ""
+
+        let why =
+            if told.Length = 0 then
+                ""
+            else
+                " (" + (told |> Seq.truncate 3 |> String.concat "; ") + more + ")"
+
         if all.Length = 0 then
             ""
         else
-            let more =
-                if told.Length > 3 then
-                    $"; {told.Length - 3} other reasons"
-                else
-                    ""
-
-            let why =
-                if told.Length = 0 then
-                    ""
-                else
-                    ": " + (told |> Seq.truncate 3 |> String.concat "; ") + more
-
-            $"{all.Length} {what} left out{why}"
+            $"{what} left out: {all.Length}{why}."
 
     let hidden (t: Trace) =
         t.SetProperty("showlegend", false)

@@ -485,6 +485,11 @@ type EngineReport private () =
                         Name = $"1 %% from {port.Name}"
                         Items = [| LoadItem.AirShare(port.Name, 0.01) |]
                     }
+
+                    {
+                        Name = $"1 {units.FlowUnit} from {port.Name}"
+                        Items = [| LoadItem.Air(port.Name, 1.0<kg / s> / units.Flow 1.0) |]
+                    }
                 for spool in model.DesignPoint().Spools do
                     {
                         Name = $"{number 0 power} kW from {spool.Name}"
@@ -493,16 +498,22 @@ type EngineReport private () =
             |]
 
             let result = Penalties.Run(model, flight, rating, loads)
-            page.Chart(LossCharts.Penalties(result, false))
+            // Per cent and flow of one port are the same picture twice.
+            let drawn =
+                result.Loads
+                |> Seq.filter (fun l -> l.Items[0].Kind <> LoadKind.Flow)
+                |> Seq.toArray
+
+            page.Chart(LossCharts.Penalties({ result with Loads = drawn }, false))
 
             page.Words
-                $"At {units.AltitudeText flight.PressureAltitude}, Mach {flight.Mach:F2}, ISA {flight.IsaOffset:F0} K, on the thrust of rating {rating}; full solutions, one unit at a time."
+                $"At {units.AltitudeText flight.PressureAltitude}, Mach {flight.Mach:F2}, ISA {flight.IsaOffset:F0} K, on the thrust of rating {rating}; full solutions, one load at a time."
 
             page.Table(
                 "",
                 1,
                 [
-                    "one unit of"
+                    "load"
                     "SFC at constant thrust %"
                     "T41 K"
                     "EGT K"
@@ -510,7 +521,7 @@ type EngineReport private () =
                     "break K"
                 ],
                 [
-                    for p in result.PerUnit do
+                    for p in result.Loads do
                         [
                             p.Name
                             percent 3 p.AtThrust.Full.Sfc

@@ -213,7 +213,7 @@ type EnvelopeCharts private () =
             |> Seq.collect _.Rows
             |> Seq.filter (fun row -> isNull row.Point)
             |> Seq.map _.Reason
-            |> ChartStyle.missing "thrusts"
+            |> ChartStyle.missing "Thrusts"
 
         EnvelopeCharts.Loops(
             $"{loops[0].Engine}: SFC against thrust, up to rating {loops[0].Rating}",
@@ -287,7 +287,7 @@ type EnvelopeCharts private () =
                         | null -> ""
                         | given -> given[i, j]
         }
-        |> ChartStyle.missing "places"
+        |> ChartStyle.missing "Places"
 
     /// <summary>
     /// A quantity over altitude and Mach number as a carpet: lines of equal altitude and of equal Mach number, each family named

@@ -98,7 +98,7 @@ type LossCharts private () =
             loads
             |> Seq.collect (fun l -> [ l.AtThrust.Reason; l.AtLimit.Reason ])
             |> Seq.filter (fun reason -> reason <> "")
-            |> ChartStyle.missing "answers"
+            |> ChartStyle.missing "Answers"
 
         let names = loads |> Array.map _.Name
         let sfc = loads |> Array.map (fun l -> 100.0 * l.AtThrust.Full.Sfc)

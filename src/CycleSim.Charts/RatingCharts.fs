@@ -172,7 +172,7 @@ type RatingCharts private () =
             |> Seq.collect _.Rows
             |> Seq.filter (fun row -> isNull row.Point)
             |> Seq.map _.Reason
-            |> ChartStyle.missing "temperatures"
+            |> ChartStyle.missing "Temperatures"
 
         ChartStyle.chart
             $"{results[0].Engine}, rating {results[0].Rating}: net thrust against outside temperature"
@@ -196,7 +196,7 @@ type RatingCharts private () =
             table.Cells
             |> Seq.filter (fun c -> isNull c.Point)
             |> Seq.map _.Reason
-            |> ChartStyle.missing "cells"
+            |> ChartStyle.missing "Cells"
 
         let names = table.Rows |> Seq.concat |> Seq.map _.Governing |> governingOf
 
