@@ -22,6 +22,12 @@ public sealed class Matcher
 
     private const int MostIterations = 30;
 
+    // A stride of the continuation that takes more steps than this is too long.
+    private const int MostIterationsOfStride = 8;
+
+    // A continuation whose strides have become this short stands before a place without solution.
+    private const double ShortestStride = 2e-3;
+
     // Below this imbalance one or two steps with the Jacobian at hand are expected to solve the point.
     private const double NearlySolved = 2e-4;
 
@@ -280,7 +286,7 @@ public sealed class Matcher
             Inputs[_problem.Freed[k]] = _x[m + k] * Engine.Layout.Scale(_problem.Freed[k]);
     }
 
-    private MatchOutcome Newton()
+    private MatchOutcome Newton(int mostIterations = MostIterations)
     {
         _differentiated.Load(Inputs);
         _plain.Load(Inputs);
@@ -291,7 +297,7 @@ public sealed class Matcher
         var gain = 1.0;
         Span<double> step = stackalloc double[Dual.Width];
         var iteration = 0;
-        for (; iteration < MostIterations; iteration++)
+        for (; iteration < mostIterations; iteration++)
         {
             if (norm <= Tolerance || !double.IsFinite(norm) || !NewtonStep(step, out var share))
                 break;
@@ -383,7 +389,7 @@ public sealed class Matcher
         double done = 0.0,
             stride = 0.25;
         var outcome = new MatchOutcome(MatchStatus.NotConverged, 1.0, 0, 0, 0, -1);
-        while (done < 1.0 && stride > 1e-4)
+        while (done < 1.0 && stride > ShortestStride)
         {
             _x.AsSpan(0, _n).CopyTo(_pathStart);
             var next = Math.Min(1.0, done + stride);
@@ -391,7 +397,7 @@ public sealed class Matcher
                 _shift[i] = (1.0 - next) * _fullShift[i];
             for (var i = 0; i < Inputs.Length; i++)
                 Inputs[i] = Engine.DesignInputs[i] + next * (_wantedInputs[i] - Engine.DesignInputs[i]);
-            var local = Newton();
+            var local = Newton(MostIterationsOfStride);
             outcome = After(outcome, local);
             if (local.Solved)
             {
