@@ -275,23 +275,31 @@ let tests =
             refused [| LoadItem.AirShare("customer-bleed", nan) |] "more than nothing"
             refused [| LoadItem.AirShare("customer-bleed", 1.0) |] "less than 100 %")
 
-        // Which engine meets the source where: at the delivery the direct-drive one (booster 1.75, bypass ratio 6), in front of
-        // the high-pressure compressor the geared one (2.8 and 11). Elsewhere each misses it, by up to 5 points in front and
-        // 7 at the delivery, and at 8 % half-way neither is within 3 points: how much work is done ahead of the port, and by
-        // how much thrust goes with the core, is the engine's own affair.
-        testCase
-            "take-off thrust against the published one, at the ports where an engine is like the source's"
-            (fun () ->
-                let near name port w cases =
-                    let ratio = takeOffRatio (withPorts name)
+        // The source's engines are two-shaft turbofans that it does not describe station by station. This one is of the usual
+        // kind: fan 1.7, booster 2.5, high-pressure compressor 10, bypass ratio 6.5, 125 kN. Engines about it (booster 2.3 to 2.6,
+        // high-pressure compressor 8 to 10) meet the source too, or all but; velda-27, with less booster, is up to 5 points above
+        // it in front of the compressor, and lunde-14g, geared, up to 7 below it at the delivery.
+        testCase "take-off thrust falls with bleed as published, wherever in the compressor it is taken" (fun () ->
+            let usual =
+                EngineModel(
+                    withEdit "velda-27" (fun text ->
+                        text
+                            .Replace("pressure_ratio = 1.66", "pressure_ratio = 1.70")
+                            .Replace("pressure_ratio = 1.75", "pressure_ratio = 2.5")
+                            .Replace("pressure_ratio = 12.0", "pressure_ratio = 10.0")
+                            .Replace("bypass_ratio = 5.8", "bypass_ratio = 6.5")
+                            .Replace("thrust = \"120 kN\"", "thrust = \"125 kN\"")
+                            // Its speed limits are velda-27's own and would lie below this thrust.
+                            .Replace("value = \"107 %\"", "value = \"130 %\"")
+                            .Replace("value = \"110 %\"", "value = \"130 %\""))
+                )
 
-                    for percent, points in cases do
-                        let here, there = ratio port percent, publishedRatio percent w
-                        Expect.isLessThan (abs (here - there)) points $"{percent} %% at w = {w}: {here:F4}, {there:F4}"
+            let ratio = takeOffRatio usual
 
-                near "velda-27" "test-end" 1.0 [ 2, 0.015; 4, 0.015; 8, 0.030 ]
-                near "lunde-14g" "test-front" 0.0 [ 2, 0.015; 4, 0.015; 8, 0.030 ]
-                near "lunde-14g" "test-middle" 0.5 [ 2, 0.015; 4, 0.015 ])
+            for port, w in [ "test-front", 0.0; "test-middle", 0.5; "test-end", 1.0 ] do
+                for percent, points in [ 2, 0.015; 4, 0.015; 8, 0.030 ] do
+                    let here, there = ratio port percent, publishedRatio percent w
+                    Expect.isLessThan (abs (here - there)) points $"{percent} %% at w = {w}: {here:F4}, {there:F4}")
 
         testCase
             "half-way and at the delivery the twin-spool engines stand on either side of the published thrust"
