@@ -166,7 +166,8 @@ module internal ChartStyle =
         |> String.concat "<br>"
 
     let note (text: string) =
-        label (box 0.0) (box -0.24) (wrapped text) [
+        label (box 0.0) (box 0.0) (wrapped text) [
+            "yshift", box -82
             "xref", box "paper"
             "yref", box "paper"
             "xanchor", box "left"

@@ -41,7 +41,7 @@ type LossCharts private () =
             values |> Seq.filter Double.IsFinite |> Seq.append [ 0.0 ] |> Seq.toArray
 
         let low, high = Array.min known, Array.max known
-        let room = 0.16 * max (high - low) 1e-9
+        let room = 0.18 * max (high - low) 1e-9
 
         ChartStyle.axis title [
             yield! zero
@@ -120,6 +120,8 @@ type LossCharts private () =
             (categories []) [ ChartStyle.cautioned $"Full solutions, not first order. {without}" ] [
                 "barmode", box "group"
                 "bargap", box 0.3
+                // Bars thinner than their numbers would shrink them.
+                "height", box (max 545 (205 + 50 * loads.Length))
             ]
 
     /// <summary>From a total through what is taken off (or added) to what is left, in one unit.</summary>

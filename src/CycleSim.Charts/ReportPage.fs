@@ -34,7 +34,7 @@ tbody tr:nth-child(5n){border-bottom:1px solid #e3e3e3}
 pre{font-size:.82em;line-height:1.35;background:#f7f7f7;padding:1em;overflow-x:auto}
 small,.note{color:#555}
 @page{size:A4;margin:14mm}
-@media print{body{margin:0;max-width:none;font-size:10pt}h2,h3{break-after:avoid}.cyclesim-chart{break-inside:avoid;zoom:.68}
+@media print{body{margin:0;max-width:none;font-size:10pt}h2,h3{break-after:avoid}.cyclesim-chart{break-inside:avoid;zoom:.85}
 tr{break-inside:avoid}thead{display:table-header-group}pre{white-space:pre-wrap}.modebar{display:none}}
 """
 
