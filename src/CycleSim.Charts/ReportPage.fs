@@ -34,9 +34,16 @@ tbody tr:nth-child(5n){border-bottom:1px solid #e3e3e3}
 pre{font-size:.82em;line-height:1.35;background:#f7f7f7;padding:1em;overflow-x:auto}
 small,.note{color:#555}
 @page{size:A4;margin:14mm}
-@media print{body{margin:0;max-width:none;font-size:10pt}h2,h3{break-after:avoid}.cyclesim-chart{break-inside:avoid;zoom:.85}
+@media print{body{margin:0;max-width:none;font-size:10pt}h2,h3{break-after:avoid}.cyclesim-chart{break-inside:avoid;zoom:.7}
 tr{break-inside:avoid}thead{display:table-header-group}pre{white-space:pre-wrap}.modebar{display:none}}
 """
+
+    // On paper every chart has the width that its words were set for; the style sheet scales it to the sheet.
+    static let forPrint =
+        "(function(){function all(size){document.querySelectorAll('.cyclesim-chart').forEach(function(e){"
+        + "Plotly.relayout(e,size)})}"
+        + "window.addEventListener('beforeprint',function(){all({autosize:false,width:960})});"
+        + "window.addEventListener('afterprint',function(){all({autosize:true,width:null})})})();"
 
     member _.Section(name: string) =
         sections <- sections + 1
@@ -109,7 +116,7 @@ tr{break-inside:avoid}thead{display:table-header-group}pre{white-space:pre-wrap}
         + "<meta name=\"viewport\" content=\"width=device-width\">"
         + $"<title>{escaped title}</title><style>{style}</style>{ChartHtml.LibraryElement}</head>\n<body>\n"
         + body.ToString().Replace("<!--contents-->", $"<nav><ol>{contents}</ol></nav>")
-        + "</body></html>\n"
+        + $"<script>{forPrint}</script></body></html>\n"
 
     member _.Opening(name: string, description: string) =
         add $"<h1>{escaped name}</h1><p>{escaped description}</p>"
