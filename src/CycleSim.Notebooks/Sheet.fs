@@ -45,7 +45,7 @@ module internal Figures =
     let decimals (digits: int) (value: float) = written $"F{digits}" value
     /// Six significant figures, for values of any size.
     let general value = written "G6" value
-    let small value = written "E1" value
+    let small value = written "0.0E-00" value
     let force newtons = decimals 2 (newtons / 1e3)
     let flow kilogramsPerSecond = decimals 3 kilogramsPerSecond
     let fuelFlow kilogramsPerSecond = decimals 4 kilogramsPerSecond
