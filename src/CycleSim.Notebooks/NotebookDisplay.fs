@@ -66,6 +66,9 @@ type NotebookDisplay private () =
         NotebookDisplay.ShowTable<ReducedThrustResult> _.Table([||])
         NotebookDisplay.ShowTable<ThrottleLoop> _.Table([||])
         NotebookDisplay.ShowTable<BestAltitude> _.Table([||])
+        NotebookDisplay.ShowTable<EgtMarginResult> _.Table([||])
+        NotebookDisplay.ShowTable<DiagnosisResult> _.Table([||])
+        NotebookDisplay.ShowTable<UncertaintyResult> _.Table([||])
         NotebookDisplay.ShowTable<SweepResult> _.Table([||])
         NotebookDisplay.Show<SweepSummary> StudySheets.ofSweep
         NotebookDisplay.Show<Influence> StudySheets.ofInfluence
