@@ -127,6 +127,32 @@ let private shown: (string * obj * string list) list = [
         "0.500 kg/s"
     ]
 
+    let worn = [|
+        {
+            Name = "hpt efficiency"
+            Change = -0.01
+        }
+    |]
+
+    let egt = EgtMargin.Run(model, "take-off", 0.0<m>, 0.0, worn, 1300.0<K>)
+
+    "EGT margin",
+    egt,
+    [
+        "hpt efficiency"
+        "margin_change_alone_K [K]"
+        (float egt.Shares[0].Alone).ToString("G6", CultureInfo.InvariantCulture)
+    ]
+
+    let loop = Throttle.Loop(model, cruise, "max-cruise", 0.5, 5)
+
+    "throttle loop",
+    loop,
+    [
+        "sfc_kg_per_N_s [kg/(N s)]"
+        (float loop.RatedThrust).ToString("G6", CultureInfo.InvariantCulture)
+    ]
+
     let survey = SurgeSurvey.Run(model, "take-off")
 
     "surge survey",
