@@ -73,8 +73,7 @@ try
 {
     return parsed.Invoke(new InvocationConfiguration { EnableDefaultExceptionHandler = false });
 }
-catch (Exception error)
-    when (error is UsageException or LoadException or SweepException or WearException or UncertaintyException)
+catch (Exception error) when (error is UsageException or QuestionException)
 {
     return Fail(error, ExitCode.Usage);
 }

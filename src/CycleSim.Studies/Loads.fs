@@ -52,7 +52,7 @@ type NamedLoad = {
 
 /// A load that this engine cannot carry, or that is none; the message says why and what was expected.
 type LoadException(message: string) =
-    inherit Exception(message)
+    inherit QuestionException(message)
 
 /// Where loads meet the inputs of an engine.
 module internal Loads =

@@ -6,7 +6,7 @@ open CycleSim.Engine
 
 /// A sweep that cannot be run as it was asked for; the message says what was wrong and what to do.
 type SweepException(message: string) =
-    inherit Exception(message)
+    inherit QuestionException(message)
 
 type internal InputKind =
     | Altitude

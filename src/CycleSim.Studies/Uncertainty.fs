@@ -105,7 +105,7 @@ type UncertaintyResult = {
 
 /// A question about uncertainty that cannot be asked; the message says why and what was expected.
 type UncertaintyException(message: string) =
-    inherit Exception(message)
+    inherit QuestionException(message)
 
 /// Where an uncertain input acts: on inputs of the layout, or on the power setting.
 type private Lever =

@@ -14,7 +14,7 @@ type WornPart = {
 
 /// A question about wear that this engine cannot be asked; the message says why and what was expected.
 type WearException(message: string) =
-    inherit Exception(message)
+    inherit QuestionException(message)
 
 /// Where wear meets the inputs of an engine.
 [<AbstractClass; Sealed>]
