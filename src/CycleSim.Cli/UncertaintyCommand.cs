@@ -152,11 +152,13 @@ internal static class UncertaintyCommand
                 }
             )
         );
-        foreach (var (reason, count) in s.WithoutPoint.Take(5))
-            Layout.Line($"{count} drawn points do not exist and are left out: {reason}");
+        foreach (var (reason, count) in s.WithoutPoint)
+            Layout.Line($"{count} of {s.Finished} drawn points do not exist and are left out, such as: {reason}");
         if (s.Finished < s.Draws)
             Layout.Line($"Stopped after {s.Finished} of {s.Draws} draws.");
-        Layout.Line("Inputs are independent of one another; bleed and power below nothing count as nothing.");
+        Layout.Line(
+            "Inputs are independent of one another; bleed, power and Mach number below nothing count as nothing."
+        );
         Layout.Line($"Definition {loaded.Source}, SHA-256 {loaded.Hash[..16]}, cyclesim {Documents.Version}.");
         Layout.Line(Layout.Caution);
     }

@@ -53,6 +53,15 @@ type ExplainedReading = {
     Miss: float
 }
 
+/// Causes fitted by the full model.
+type private Fit = {
+    First: float[]
+    Changes: float[]
+    Values: float[]
+    Covariance: Matrix<float>
+    Misses: float[]
+}
+
 /// Which component changes explain a shift of readings.
 type DiagnosisResult = {
     Engine: string
@@ -64,7 +73,7 @@ type DiagnosisResult = {
     /// The causes fitted together; empty where none was asked for.
     Estimates: IReadOnlyList<CauseEstimate>
     Readings: IReadOnlyList<ExplainedReading>
-    /// Of the causes fitted together; NaN where none was.
+    /// Of the causes fitted together, what a prior is missed by counted in; NaN where none was.
     ChiSquare: float
     /// Readings (and priors) less causes.
     DegreesOfFreedom: int
@@ -130,6 +139,16 @@ type HealthDiagnosis private () =
 
     // Above this the angle between two signatures is less than the readings' scatter is likely to allow.
     static let alikeFrom = 0.98
+
+    static let correlatedFrom = 0.95
+
+    // Changes of more than a fifth are no wear: the fit is not followed beyond.
+    static let mostChange = 0.2
+
+    static let mostRounds = 25
+
+    // A change of this share is far below what any reading shows.
+    static let settled = 1e-8
 
     static member private Check(engine: SizedEngine, held: Limit, readings: Reading[]) =
         if readings.Length = 0 then
@@ -210,6 +229,8 @@ type HealthDiagnosis private () =
         let solve (inputsOf: int[]) (changes: float[]) =
             let inputs = StudyPoints.inputs model flight loads
 
+            let unchanged = inputsOf |> Array.map (fun input -> inputs[input])
+
             for input, change in Array.zip inputsOf changes do
                 inputs[input] <- inputs[input] * (1.0 + change)
 
@@ -223,7 +244,11 @@ type HealthDiagnosis private () =
             let values = rows |> Array.map (fun row -> influence.OutputValues[row])
 
             let jacobian =
-                Matrix.Build.Dense(m, inputsOf.Length, fun i j -> influence[rows[i], inputsOf[j]] / sigma[i])
+                Matrix.Build.Dense(
+                    m,
+                    inputsOf.Length,
+                    fun i j -> influence[rows[i], inputsOf[j]] * unchanged[j] / sigma[i]
+                )
 
             point, values, jacobian
 
@@ -244,68 +269,72 @@ type HealthDiagnosis private () =
             else
                 jacobian, miss
 
+        // Where the readings do not see a direction at all there is no step.
         let step jacobian miss x strength =
             let a, b = withPrior jacobian miss x strength
             let svd = a.Svd true
 
-            // A direction that the readings do not see at all has no estimate.
-            if svd.ConditionNumber > 1e9 then
-                None
+            if svd.ConditionNumber < 1e9 then
+                Some((svd.Solve(Vector.Build.Dense b)).ToArray(), a, b)
             else
-                Some((svd.Solve(Vector.Build.Dense b)).ToArray(), a)
+                None
 
-        let fit (names: string[]) strength =
+        let unseen =
+            "these readings do not determine them; a prior or other readings would be needed"
+
+        let fit (names: string[]) strength : Result<Fit, string> =
             let inputsOf = names |> Array.map (fun name -> Wear.Input(engine, name))
+
+            let rec refine (first: float[]) (x: float[]) rounds =
+                let _, values, jacobian = solve inputsOf x
+
+                match step jacobian (misses values) x strength with
+                | None -> Error unseen
+                | Some(move, a, b) when move |> Array.forall (fun d -> abs d < settled) ->
+                    Ok {
+                        First = first
+                        Changes = x
+                        Values = values
+                        Covariance = (a.Transpose() * a).Inverse()
+                        Misses = b
+                    }
+                | Some _ when rounds = 0 ->
+                    if x |> Array.exists (fun v -> abs v >= mostChange) then
+                        Error $"the fit leads beyond a change of {100.0 * mostChange} %%, which is no wear"
+                    else
+                        Error "the fit does not settle"
+                | Some(move, _, _) ->
+                    let next = Array.map2 (fun v d -> Math.Clamp(v + d, -mostChange, mostChange)) x move
+
+                    refine (if rounds = mostRounds then move else first) next (rounds - 1)
+
             let zero = Array.zeroCreate<float> names.Length
-            let _, values, jacobian = solve inputsOf zero
 
-            match step jacobian (misses values) zero strength with
-            | None -> None
-            | Some(linear, _) ->
-                // Changes of more than a fifth are no wear; a step is cut there.
-                let limited (x: float[]) =
-                    x |> Array.map (fun v -> Math.Clamp(v, -0.2, 0.2))
+            try
+                refine zero zero mostRounds
+            with :? NoSolutionException as none ->
+                Error $"on the way to the fit there is no point: {none.Message}"
 
-                let rec refine (x: float[]) rounds =
-                    let _, values, jacobian = solve inputsOf x
-                    let miss = misses values
-
-                    match step jacobian miss x strength with
-                    | Some(move, a) when rounds > 0 && move |> Array.exists (fun d -> abs d > 1e-9) ->
-                        refine (limited (Array.map2 (+) x move)) (rounds - 1)
-                    | Some(_, a) -> x, values, miss, a
-                    | None -> x, values, miss, jacobian
-
-                let full, values, miss, a =
-                    try
-                        refine (limited linear) 12
-                    with :? NoSolutionException ->
-                        // No point with these changes: what the Jacobian says is all there is.
-                        let explained = (jacobian * Vector.Build.Dense linear).ToArray()
-
-                        Array.map (fun _ -> nan) linear,
-                        Array.init m (fun i -> nominal[i] + explained[i] * sigma[i]),
-                        Array.init m (fun i -> shift[i] / sigma[i] - explained[i]),
-                        jacobian
-
-                let covariance = (a.Transpose() * a).Inverse()
-                let deviations = Array.init names.Length (fun k -> sqrt covariance[k, k])
-                Some(linear, full, deviations, values, squares miss, jacobian)
-
-        let singles =
+        let alone =
             Wear.Parts engine
-            |> Seq.choose (fun name ->
-                fit [| name |] 0.0
-                |> Option.map (fun (linear, full, deviations, _, chiSquare, _) -> {
-                    Name = name
-                    Change = if Double.IsNaN full[0] then linear[0] else full[0]
-                    StandardDeviation = deviations[0]
-                    ChiSquare = chiSquare
-                }))
-            |> Seq.sortBy _.ChiSquare
+            |> Seq.map (fun name -> name, fit [| name |] 0.0)
             |> Seq.toArray
 
-        let together = if causes.Length = 0 then None else fit causes prior
+        let singles =
+            alone
+            |> Array.choose (fun (name, fitted) ->
+                match fitted with
+                | Ok fitted ->
+                    Some {
+                        Name = name
+                        Change = fitted.Changes[0]
+                        StandardDeviation = sqrt fitted.Covariance[0, 0]
+                        ChiSquare = squares fitted.Misses
+                    }
+                | Error _ -> None)
+            |> Array.sortBy _.ChiSquare
+
+        let together = if causes.Length = 0 then None else Some(fit causes prior)
 
         // Signatures of the causes asked for, or of all where none is.
         let compared =
@@ -340,8 +369,24 @@ type HealthDiagnosis private () =
                 let how = if pair.Cosine > 0.0 then "alike" else "opposite"
                 $"{pair.First} and {pair.Second} look {how} in these readings (cosine {cosine}): they cannot tell one from the other."
 
-            if causes.Length > 0 && together.IsNone then
-                "the causes asked for cannot be told apart by these readings at all; a prior or other readings would be needed."
+            match together with
+            | Some(Error reason) -> $"the parts named are not fitted together: {reason}."
+            | Some(Ok fitted) ->
+                let covariance = fitted.Covariance
+
+                for i in 0 .. causes.Length - 2 do
+                    for j in i + 1 .. causes.Length - 1 do
+                        let correlation = covariance[i, j] / sqrt (covariance[i, i] * covariance[j, j])
+
+                        if abs correlation > correlatedFrom then
+                            let text = correlation.ToString("F3", Globalization.CultureInfo.InvariantCulture)
+                            $"the estimates of {causes[i]} and {causes[j]} hang together (correlation {text}): what is given to one is taken from the other or others."
+            | None -> ()
+
+            for name, fitted in alone do
+                match fitted with
+                | Error reason -> $"{name} is left out of the ranking: {reason}."
+                | Ok _ -> ()
 
             match singles |> Array.truncate 2 with
             | [| best; second |] when second.ChiSquare - best.ChiSquare < 4.0 ->
@@ -351,16 +396,16 @@ type HealthDiagnosis private () =
 
         let estimates, values, chiSquare =
             match together with
-            | Some(linear, full, deviations, values, chiSquare, _) ->
+            | Some(Ok fitted) ->
                 Array.init causes.Length (fun k -> {
                     Name = causes[k]
-                    Linear = linear[k]
-                    Full = full[k]
-                    StandardDeviation = deviations[k]
+                    Linear = fitted.First[k]
+                    Full = fitted.Changes[k]
+                    StandardDeviation = sqrt fitted.Covariance[k, k]
                 }),
-                values,
-                chiSquare
-            | None -> [||], nominal, nan
+                fitted.Values,
+                squares fitted.Misses
+            | _ -> [||], nominal, nan
 
         {
             Engine = engine.Definition.Name

@@ -70,7 +70,7 @@ type UncertaintyResult = {
     /// Draws asked for, and those that were finished: fewer where it was stopped.
     Draws: int
     Finished: int
-    /// Finished draws without a point, by their reason.
+    /// Finished draws without a point, counted by what stood in the way; in the words of the first of each kind.
     WithoutPoint: IReadOnlyList<KeyValuePair<string, int>>
     Seed: uint64
 } with
@@ -191,9 +191,12 @@ type Uncertainty private () =
 
                     raise (UncertaintyException $"'{name}' is no input that can be uncertain; there are {known}.")
 
-    static member private Check(inputs: UncertainInput[], draws: int) =
+    static member private Check(inputs: UncertainInput[], draws: int, threads: int) =
         if inputs.Length = 0 then
             raise (UncertaintyException "no input is uncertain; give at least one.")
+
+        if threads < 0 then
+            raise (UncertaintyException $"{threads} threads; expected 0 (one for each core) or more.")
 
         if inputs.Length > 64 then
             raise (UncertaintyException $"{inputs.Length} uncertain inputs; expected at most 64.")
@@ -217,6 +220,7 @@ type Uncertainty private () =
     /// <param name="loads">bleeds, offtakes and wear of the nominal point; nothing where null</param>
     /// <param name="progress">told the share of draws done, from any thread</param>
     /// <param name="cancellation">stops drawing; what has been drawn counts</param>
+    /// <param name="threads">one for each core where 0; the numbers do not depend on it</param>
     /// <exception cref="T:CycleSim.Studies.UncertaintyException">No such input, one twice, a size below 0, draws out of range.</exception>
     /// <exception cref="T:CycleSim.Reports.NoSolutionException">The nominal point, or every drawn one, has no solution.</exception>
     static member Run
@@ -229,10 +233,11 @@ type Uncertainty private () =
             [<Optional; DefaultParameterValue(1UL)>] seed: uint64,
             [<Optional; DefaultParameterValue(null: Action<float[]> | null)>] loads: Action<float[]> | null,
             [<Optional; DefaultParameterValue(null: IProgress<float> | null)>] progress: IProgress<float> | null,
-            [<Optional>] cancellation: CancellationToken
+            [<Optional>] cancellation: CancellationToken,
+            [<Optional; DefaultParameterValue(0)>] threads: int
         ) : UncertaintyResult =
         let uncertain = Seq.toArray inputs
-        Uncertainty.Check(uncertain, draws)
+        Uncertainty.Check(uncertain, draws, threads)
 
         let levers =
             uncertain |> Array.map (fun input -> Uncertainty.LeverOf(engine, input))
@@ -254,11 +259,23 @@ type Uncertainty private () =
             | Added input -> influence[row, input]
             | Setting -> influence.BySetting[row] * setting.Value
 
+        // Bleed and power are taken, not given, and an engine flies forwards; a draw below nothing is nothing.
+        let neverBelowNothing = [|
+            InputLayout.Mach
+
+            for k in 0 .. engine.Ports.Length - 1 do
+                engine.Layout.PortFraction k
+
+            for k in 0 .. engine.Spools.Length - 1 do
+                engine.Layout.PowerOfftake k
+        |]
+
         // Each block of draws is one unit of work; where it goes in the results depends on its number alone.
         let block = 256
         let blocks = (draws + block - 1) / block
         let values = names |> Array.map (fun _ -> Array.create draws nan)
         let reasons = Array.create<string> draws ""
+        let obstacles = Array.create draws (MatchStatus.Solved, -1)
         let finished = Array.create blocks false
         let mutable count = 0
 
@@ -274,9 +291,7 @@ type Uncertainty private () =
                     | Added input -> matcher.Inputs[input] <- matcher.Inputs[input] + change
                     | Setting -> value <- value * (1.0 + change)
 
-                // Bleed and power are taken, not given; a draw below nothing is nothing.
-                for k in 0 .. engine.Ports.Length - 1 do
-                    let at = engine.Layout.PortFraction k
+                for at in neverBelowNothing do
                     matcher.Inputs[at] <- max 0.0 matcher.Inputs[at]
 
                 let outcome =
@@ -287,6 +302,7 @@ type Uncertainty private () =
                         values[o][draw] <- (snd read[o]).Invoke matcher.Path
                 else
                     reasons[draw] <- Diagnosis.Of(engine, matcher, outcome)
+                    obstacles[draw] <- outcome.Status, outcome.Culprit
 
             finished[b] <- true
             let done' = Interlocked.Increment &count
@@ -304,8 +320,13 @@ type Uncertainty private () =
         use workers = new ThreadLocal<Matcher * float[]>(starting)
 
         try
-            Parallel.For(0, blocks, ParallelOptions(CancellationToken = cancellation), (fun b -> work workers.Value b))
-            |> ignore
+            let options =
+                ParallelOptions(
+                    CancellationToken = cancellation,
+                    MaxDegreeOfParallelism = (if threads > 0 then threads else -1)
+                )
+
+            Parallel.For(0, blocks, options, (fun b -> work workers.Value b)) |> ignore
         with :? OperationCanceledException ->
             ()
 
@@ -388,8 +409,8 @@ type Uncertainty private () =
             WithoutPoint =
                 done'
                 |> Array.filter (fun d -> reasons[d] <> "")
-                |> Array.countBy (fun d -> reasons[d])
-                |> Array.sortByDescending snd
-                |> Array.map (fun (reason, n) -> KeyValuePair(reason, n))
+                |> Array.groupBy (fun d -> obstacles[d])
+                |> Array.map (fun (_, kind) -> KeyValuePair(reasons[kind[0]], kind.Length))
+                |> Array.sortByDescending _.Value
             Seed = seed
         }

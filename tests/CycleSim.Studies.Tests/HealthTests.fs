@@ -102,7 +102,9 @@ let tests =
             Expect.isTrue
                 (result.Remarks
                  |> Seq.exists (fun r -> r.Contains "cannot tell one from the other"))
-                "in words")
+                "in words"
+
+            Expect.isTrue (result.Remarks |> Seq.exists _.Contains("hang together")) "estimates too")
 
         testCase "a prior holds back what the readings do not show, and allows more causes than readings" (fun () ->
             let readings = readingsOf [ part "hpt efficiency" -0.02 ] |> Array.take 2
@@ -115,6 +117,83 @@ let tests =
 
             Expect.throwsC (fun () -> diagnose readings causes 0.0 |> ignore) (fun error ->
                 Expect.stringContains error.Message "4 causes and 2 readings" "refused without"))
+
+        testCase "a fit that leads beyond any wear is no answer, and it is said" (fun () ->
+            // A core speed far down beside little else: no mixture of efficiencies does that.
+            let flight = ground
+            let expected = model.Value.At(&flight, held.Quantity, held.Value)
+
+            let shifted quantity share sigma = {
+                Quantity = quantity
+                Shift = share * expected.Value quantity
+                Sigma = sigma * expected.Value quantity
+            }
+
+            let readings = [|
+                shifted Quantity.T45 0.011 0.0027
+                shifted Quantity.FuelFlow 0.011 0.005
+                shifted Quantity.N2 -0.02 0.001
+            |]
+
+            let result =
+                diagnose readings [ "hpt efficiency"; "hpc efficiency"; "lpt efficiency" ] 0.0
+
+            Expect.isEmpty result.Estimates "no estimates"
+            Expect.isTrue (Double.IsNaN result.ChiSquare) "no chi-square"
+
+            Expect.isTrue
+                (result.Remarks
+                 |> Seq.exists _.Contains("the parts named are not fitted together"))
+                "in words"
+
+            // Every cause alone that is ranked explains no less than nothing wrong does.
+            for single in result.Singles do
+                Expect.isLessThanOrEqual single.ChiSquare (result.ChiSquareOfNothing + 1e-9) single.Name)
+
+        testCase "with a prior, what it is missed by counts in chi-square" (fun () ->
+            let prior = 0.002
+
+            let result =
+                diagnose (readingsOf [ part "hpt efficiency" -0.03 ]) [ "hpt efficiency"; "lpt flow" ] prior
+
+            let ofReadings = result.Readings |> Seq.sumBy (fun r -> r.Miss * r.Miss)
+            let ofPrior = result.Estimates |> Seq.sumBy (fun e -> (e.Full / prior) ** 2.0)
+            Expect.isGreaterThan ofPrior 1.0 "a prior that matters"
+            Expect.floatClose Accuracy.high result.ChiSquare (ofReadings + ofPrior) "both")
+
+        testCase "changes count from the engine as it was, worn or not" (fun () ->
+            let input = Wear.Input(model.Value.Engine, "hpt efficiency")
+            let change = -1e-4
+
+            let point factor =
+                let flight = ground
+                let inputs = model.Value.Inputs &flight
+                inputs[input] <- factor
+                model.Value.At(&flight, held.Quantity, held.Value, inputs)
+
+            let before, after = point 0.92, point (0.92 * (1.0 + change))
+
+            let readings =
+                measured
+                |> Array.map (fun q -> {
+                    Quantity = q
+                    Shift = after.Value q - before.Value q
+                    Sigma = 0.003 * before.Value q
+                })
+
+            let result =
+                HealthDiagnosis.Run(
+                    model.Value,
+                    ground,
+                    held,
+                    readings,
+                    [| "hpt efficiency" |],
+                    loads = (fun inputs -> inputs[input] <- 0.92)
+                )
+
+            // So small a change is linear: the Jacobian alone finds it.
+            Expect.floatClose { absolute = 0.0; relative = 2e-3 } result.Estimates[0].Linear change "first order"
+            Expect.floatClose { absolute = 0.0; relative = 1e-4 } result.Estimates[0].Full change "full")
 
         testCase "questions that make no sense are refused" (fun () ->
             let refuse readings causes (says: string) =

@@ -106,7 +106,80 @@ let tests =
             let without = result.WithoutPoint |> Seq.sumBy _.Value
             Expect.isGreaterThan without 0 "some"
             Expect.isLessThan without 256 "not all"
-            Expect.isTrue (result.WithoutPoint |> Seq.forall (fun w -> w.Key <> "")) "reasons")
+            Expect.isTrue (result.WithoutPoint |> Seq.forall (fun w -> w.Key <> "")) "reasons"
+            // Kinds of obstacles, not one for every draw.
+            Expect.isLessThan result.WithoutPoint.Count 12 "kinds")
+
+        testCase "nothing is drawn below nothing: air speed and power taken" (fun () ->
+            // Textbook: at a held speed of the fan the thrust falls with air speed by the ram drag; at a held thrust, power taken
+            // from a spool costs fuel.
+            let still =
+                Uncertainty.Run(
+                    engine.Value,
+                    ground,
+                    Limit(Quantity.N1, 0.95),
+                    [| input "mach" Spread.Uniform 0.05 |],
+                    300
+                )
+
+            let thrust = output "net_thrust_N" still
+            Expect.isLessThanOrEqual thrust.High (thrust.Nominal * (1.0 + 1e-9)) "no thrust from flying backwards"
+
+            let spool = engine.Value.Spools.Length - 1
+
+            let unloaded =
+                Uncertainty.Run(
+                    engine.Value,
+                    ground,
+                    setting,
+                    [| input "high power" Spread.Uniform 3e5 |],
+                    300,
+                    loads = (fun inputs -> inputs[engine.Value.Layout.PowerOfftake spool] <- 0.0)
+                )
+
+            let fuel = output "fuel_flow_kg_per_s" unloaded
+            Expect.isGreaterThanOrEqual fuel.Low (fuel.Nominal * (1.0 - 1e-9)) "no fuel from power put in")
+
+        testCase "the number of threads changes no bit" (fun () ->
+            let on threads =
+                Uncertainty.Run(
+                    engine.Value,
+                    ground,
+                    setting,
+                    [|
+                        input "hpt efficiency" Spread.Normal 0.01
+                        input "temperature" Spread.Uniform 5.0
+                    |],
+                    1500,
+                    9UL,
+                    threads = threads
+                )
+
+            Expect.equal (Seq.toArray (on 1).Outputs) (Seq.toArray (on 4).Outputs) "outputs")
+
+        testCase "stopped on the way, what has been drawn counts" (fun () ->
+            use source = new CancellationTokenSource()
+
+            let stop = {
+                new IProgress<float> with
+                    member _.Report _ = source.Cancel()
+            }
+
+            let result =
+                Uncertainty.Run(
+                    engine.Value,
+                    ground,
+                    setting,
+                    [| input "hpt efficiency" Spread.Normal 0.01 |],
+                    100000,
+                    progress = stop,
+                    cancellation = source.Token,
+                    threads = 1
+                )
+
+            Expect.equal result.Draws 100000 "asked"
+            Expect.isGreaterThanOrEqual result.Finished 2 "some"
+            Expect.isLessThan result.Finished 100000 "not all")
 
         testCase "stopped at once there is nothing to report, and it is said" (fun () ->
             use source = new CancellationTokenSource()
