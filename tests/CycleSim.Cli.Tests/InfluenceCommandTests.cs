@@ -59,7 +59,7 @@ public class InfluenceCommandTests
     }
 
     [Theory]
-    [InlineData("is not a component", "--worn", "hpx efficiency=-2 %")]
+    [InlineData("is not a part of", "--worn", "hpx efficiency=-2 %")]
     [InlineData("between -50 and 50 %", "--worn", "hpt efficiency=-90 %")]
     [InlineData("takes no condition or load", "--design", "--bleed", "customer-bleed=1 %")]
     public void What_means_nothing_is_refused(string message, params string[] arguments)
