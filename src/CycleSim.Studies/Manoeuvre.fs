@@ -226,11 +226,7 @@ type Manoeuvre private () =
             }
 
             try
-                let inputs = model.Inputs &flight
-
-                match loads with
-                | null -> ()
-                | act -> act.Invoke inputs
+                let inputs = StudyPoints.inputs model flight loads
 
                 let point =
                     model.At(&flight, waypoint.Setting.Quantity, waypoint.Setting.Value, inputs)

@@ -145,26 +145,10 @@ type RatingQuestions private () =
         let rating = model.Rating ratingName
         let flat = rating.FlatThrust(float altitude, mach)
 
-        let flightAt (outside: float) =
-            let dry = FlightCondition.AtTemperature(float altitude, mach, outside)
-
-            if relativeHumidity > 0.0 then
-                dry.WithRelativeHumidity relativeHumidity
-            else
-                dry
-
-        let inputsAt (flight: FlightCondition) =
-            let inputs = model.Inputs &flight
-
-            match loads with
-            | null -> ()
-            | act -> act.Invoke inputs
-
-            inputs
-
-        let here = flightAt (float temperature)
-        let now = model.AtRating(&here, rating, inputsAt here)
-        let point = model.At(&here, Quantity.NetThrust, float wanted, inputsAt here)
+        let here = StudyPoints.flight altitude mach temperature relativeHumidity
+        let inputs = StudyPoints.inputs model here loads
+        let now = model.AtRating(&here, rating, inputs)
+        let point = model.At(&here, Quantity.NetThrust, float wanted, inputs)
 
         let limits =
             rating.Limits
@@ -186,7 +170,7 @@ type RatingQuestions private () =
             else
                 let mutable outside = 0.0
                 let mutable governing = -1
-                let outcome = rating.Break(inputsAt here, float wanted, &outside, &governing)
+                let outcome = rating.Break(inputs, float wanted, &outside, &governing)
 
                 if outcome.Solved && outside > FlightCondition.HighestTemperature then
                     nan,
@@ -218,7 +202,7 @@ type RatingQuestions private () =
             else
                 try
                     let rating = amended thrust flatTo
-                    let given = model.AtRating(&here, rating, inputsAt here).NetThrust
+                    let given = model.AtRating(&here, rating, inputs).NetThrust
 
                     if given >= float wanted * (1.0 - 1e-7) then
                         value rating, ""
@@ -239,11 +223,7 @@ type RatingQuestions private () =
             OutsideTemperature = temperature
             Wanted = wanted
             Rated = now.NetThrust * 1.0<N>
-            Governing =
-                if now.Setting.Quantity = Quantity.NetThrust then
-                    "flat"
-                else
-                    QuantityText.Name now.Setting.Quantity
+            Governing = StudyPoints.governing now
             Point = point
             Limits = limits
             FlatThrust = flat * 1.0<N>
@@ -340,20 +320,8 @@ type RatingQuestions private () =
         let effect name humidity (loads: Action<float[]> | null) =
             let found = run humidity loads
 
-            let dry =
-                FlightCondition.AtTemperature(float altitude, mach, float plain.BreakTemperature)
-
-            let flight =
-                if humidity > 0.0 then
-                    dry.WithRelativeHumidity humidity
-                else
-                    dry
-
-            let inputs = model.Inputs &flight
-
-            match loads with
-            | null -> ()
-            | act -> act.Invoke inputs
+            let flight = StudyPoints.flight altitude mach plain.BreakTemperature humidity
+            let inputs = StudyPoints.inputs model flight loads
 
             {
                 Load = name
