@@ -60,6 +60,8 @@ type private Fit = {
     Values: float[]
     Covariance: Matrix<float>
     Misses: float[]
+    /// What a full step takes off chi-square where all is linear.
+    Promised: float
 }
 
 /// Which component changes explain a shift of readings.
@@ -145,7 +147,7 @@ type HealthDiagnosis private () =
     // Changes of more than a fifth are no wear: the fit is not followed beyond.
     static let mostChange = 0.2
 
-    static let mostRounds = 25
+    static let mostRounds = 60
 
     // A change of this share is far below what any reading shows.
     static let settled = 1e-8
@@ -285,33 +287,47 @@ type HealthDiagnosis private () =
         let fit (names: string[]) strength : Result<Fit, string> =
             let inputsOf = names |> Array.map (fun name -> Wear.Input(engine, name))
 
-            let rec refine (first: float[]) (x: float[]) rounds =
+            let at x =
                 let _, values, jacobian = solve inputsOf x
 
-                match step jacobian (misses values) x strength with
-                | None -> Error unseen
-                | Some(move, a, b) when move |> Array.forall (fun d -> abs d < settled) ->
-                    Ok {
-                        First = first
+                step jacobian (misses values) x strength
+                |> Option.map (fun (move, a, b) ->
+                    move,
+                    {
+                        First = move
                         Changes = x
                         Values = values
                         Covariance = (a.Transpose() * a).Inverse()
                         Misses = b
-                    }
-                | Some _ when rounds = 0 ->
-                    if x |> Array.exists (fun v -> abs v >= mostChange) then
+                        Promised = squares ((a * Vector.Build.Dense move).ToArray())
+                    })
+
+            // Full steps overshoot where the misses are large: they are halved until chi-square falls by a fair part of what
+            // they promise.
+            let rec refine (fitted: Fit) (move: float[]) share rounds =
+                if move |> Array.forall (fun d -> abs (share * d) < settled) then
+                    if fitted.Changes |> Array.exists (fun v -> abs v >= mostChange) then
                         Error $"the fit leads beyond a change of {100.0 * mostChange} %%, which is no wear"
                     else
-                        Error "the fit does not settle"
-                | Some(move, _, _) ->
-                    let next = Array.map2 (fun v d -> Math.Clamp(v + d, -mostChange, mostChange)) x move
+                        Ok fitted
+                elif rounds = 0 then
+                    Error "the fit does not settle"
+                else
+                    let next =
+                        Array.map2 (fun v d -> Math.Clamp(v + share * d, -mostChange, mostChange)) fitted.Changes move
 
-                    refine (if rounds = mostRounds then move else first) next (rounds - 1)
-
-            let zero = Array.zeroCreate<float> names.Length
+                    match at next with
+                    | None -> Error unseen
+                    | Some(further, found) when
+                        squares found.Misses <= squares fitted.Misses - 0.5 * share * fitted.Promised
+                        ->
+                        refine { found with First = fitted.First } further 1.0 (rounds - 1)
+                    | Some _ -> refine fitted move (0.5 * share) (rounds - 1)
 
             try
-                refine zero zero mostRounds
+                match at (Array.zeroCreate names.Length) with
+                | None -> Error unseen
+                | Some(move, fitted) -> refine fitted move 1.0 mostRounds
             with :? NoSolutionException as none ->
                 Error $"on the way to the fit there is no point: {none.Message}"
 

@@ -146,7 +146,9 @@ let tests =
                  |> Seq.exists _.Contains("the parts named are not fitted together"))
                 "in words"
 
-            // Every cause alone that is ranked explains no less than nothing wrong does.
+            // Every cause alone is ranked, and explains no less than nothing wrong does.
+            Expect.equal result.Singles.Count (Wear.Parts model.Value.Engine).Count "all parts"
+
             for single in result.Singles do
                 Expect.isLessThanOrEqual single.ChiSquare (result.ChiSquareOfNothing + 1e-9) single.Name)
 
