@@ -71,9 +71,10 @@ public static class Nozzle
                 gas.AtEnthalpy(inlet.H - drop, inlet.Y, out jet.ExitTemperature, out _);
             jet.Speed = SpeedFromDrop(drop);
             jet.ExitFlux = jet.ExitPressure / (r * jet.ExitTemperature) * jet.Speed;
-            jet.Flux = jet.ExitFlux * areaRatio;
+            jet.Flux = jet.ExitFlux;
             if (areaRatio <= 1.0)
                 return;
+            jet.Flux *= areaRatio;
         }
 
         var sonicSpeed = T.Sqrt((inlet.H - sonicEnthalpy) * 2.0);
@@ -94,10 +95,13 @@ public static class Nozzle
         }
     }
 
-    /// <summary>Gross thrust, N: velocity coefficient on the momentum, exit-plane pressure on the effective area.</summary>
-    public static T GrossThrust<T>(in Jet<T> jet, in T massFlow, in T ambientPressure, in T velocityCoefficient)
-        where T : struct, IScalar<T> =>
-        massFlow * (jet.Speed * velocityCoefficient + (jet.ExitPressure - ambientPressure) / jet.ExitFlux);
+    /// <summary>Gross thrust, N: momentum of the jet's real speed, exit-plane pressure on the effective area.</summary>
+    /// <param name="jet">what leaves</param>
+    /// <param name="speed">the jet's speed times its velocity coefficient, m/s</param>
+    /// <param name="massFlow">kg/s</param>
+    /// <param name="ambientPressure">Pa</param>
+    public static T GrossThrust<T>(in Jet<T> jet, in T speed, in T massFlow, in T ambientPressure)
+        where T : struct, IScalar<T> => massFlow * (speed + (jet.ExitPressure - ambientPressure) / jet.ExitFlux);
 
     /// <summary>
     /// Exit plane behind a sonic throat: supersonic to the area ratio, or subsonic at ambient pressure behind a normal shock in

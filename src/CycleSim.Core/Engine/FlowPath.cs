@@ -252,7 +252,10 @@ public sealed class FlowPath<T>
     {
         FanTip.W = FanFace.W - FanHub.W;
         var power = FanTip.W * (FanTip.H - FanFace.H) + FanHub.W * (FanHub.H - FanFace.H);
-        _spoolPower[_engine.Fan!.Spool] += power / _engine.Definition.Fan!.GearEfficiency;
+        var gear = _engine.Definition.Fan!.GearEfficiency;
+        if (gear < 1.0)
+            power /= gear;
+        _spoolPower[_engine.Fan!.Spool] += power;
     }
 
     private void TakeAir(int i, int k, in FlowState<T> inlet, in FlowState<T> outlet)
@@ -457,11 +460,16 @@ public sealed class FlowPath<T>
     )
     {
         Nozzle.Expand(gas, stream, ambient, nozzle.Efficiency, nozzle.ExitAreaRatio, out jet);
-        var pressureRatio = stream.P / ambient;
-        var discharge = nozzle.DischargeCurve is { } c ? c.At(pressureRatio) : T.Constant(nozzle.DischargeCoefficient);
-        var velocity = nozzle.VelocityCurve is { } v ? v.At(pressureRatio) : T.Constant(nozzle.VelocityCoefficient);
-        area = stream.W / (jet.Flux * discharge);
-        return Nozzle.GrossThrust(jet, stream.W, ambient, velocity);
+        // Coefficients that are constants stay out of the arithmetic with derivatives.
+        area = stream.W / jet.Flux;
+        if (nozzle.DischargeCurve is { } discharge)
+            area /= discharge.At(stream.P / ambient);
+        else if (nozzle.DischargeCoefficient < 1.0)
+            area /= nozzle.DischargeCoefficient;
+        var speed = nozzle.VelocityCurve is { } velocity
+            ? jet.Speed * velocity.At(stream.P / ambient)
+            : jet.Speed * nozzle.VelocityCoefficient;
+        return Nozzle.GrossThrust(jet, speed, stream.W, ambient);
     }
 
     /// <summary>

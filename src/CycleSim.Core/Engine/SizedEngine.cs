@@ -162,6 +162,7 @@ public sealed class SizedPort
     internal SizedPort(AirPort port, EngineDefinition definition)
     {
         Port = port;
+        FromFan = port.From == AirPort.Fan;
         Compressor = definition.Compressors.Select(c => c.Name).ToList().IndexOf(port.From);
         Turbine = definition.Turbines.Select(t => t.Name).ToList().IndexOf(port.Turbine ?? "");
     }
@@ -171,7 +172,7 @@ public sealed class SizedPort
     /// <summary>Index of the core compressor, -1 for the fan.</summary>
     public int Compressor { get; }
 
-    public bool FromFan => Port.From == AirPort.Fan;
+    public bool FromFan { get; }
 
     public int Turbine { get; }
 }
