@@ -2,6 +2,7 @@ using System.CommandLine;
 using CycleSim.Charts;
 using CycleSim.Definitions;
 using CycleSim.Reports;
+using CycleSim.Studies;
 
 namespace CycleSim.Cli;
 
@@ -44,18 +45,9 @@ internal static class ReportCommand
 
     private static void Write(string path, string html)
     {
-        var aside = path + ".writing";
         try
         {
-            try
-            {
-                File.WriteAllText(aside, html);
-                File.Move(aside, path, true);
-            }
-            finally
-            {
-                File.Delete(aside);
-            }
+            WholeFile.WriteText(path, html);
         }
         catch (Exception error) when (error is IOException or UnauthorizedAccessException)
         {

@@ -43,16 +43,14 @@ type EgtMarginResult = {
     member result.Table(provenance: IReadOnlyList<KeyValuePair<string, string>>) : StudyTable =
         let shares = Seq.toArray result.Shares
 
-        let entry name (value: float) =
-            KeyValuePair(name, value.ToString("R", Globalization.CultureInfo.InvariantCulture))
 
         StudyTable.Of(
             $"EGT margin of {result.Engine}, rating {result.Rating}",
             [|
                 yield! provenance
-                entry "T45_limit_K" (float result.Limit)
-                entry "margin_new_K" (float result.NewMargin)
-                entry "margin_worn_K" (float result.WornMargin)
+                StudyTable.Entry("T45_limit_K", float result.Limit)
+                StudyTable.Entry("margin_new_K", float result.NewMargin)
+                StudyTable.Entry("margin_worn_K", float result.WornMargin)
             |],
             [|
                 TableColumn.OfText("part", shares |> Array.map _.Part.Name)

@@ -71,17 +71,15 @@ type FlatRatingResult = {
                 | point -> Some point.Spools.Count)
             |> Option.defaultValue 0
 
-        let entry name (value: float) =
-            KeyValuePair(name, value.ToString("R", CultureInfo.InvariantCulture))
 
         StudyTable.Of(
             $"Flat rating {result.Rating} of {result.Engine}",
             [|
                 yield! provenance
-                entry "pressure_altitude_m" (float result.PressureAltitude)
-                entry "mach" result.Mach
-                entry "flat_thrust_N" (float result.FlatThrust)
-                entry "break_temperature_K" (float result.BreakTemperature)
+                StudyTable.Entry("pressure_altitude_m", float result.PressureAltitude)
+                StudyTable.Entry("mach", result.Mach)
+                StudyTable.Entry("flat_thrust_N", float result.FlatThrust)
+                StudyTable.Entry("break_temperature_K", float result.BreakTemperature)
             |],
             [|
                 TableColumn.Of("outside_temperature_K", "K", rows |> Array.map (fun r -> float r.OutsideTemperature))

@@ -91,7 +91,7 @@ type ManoeuvreResult = {
 
         StudyTable.Of(
             $"Surge margins of {result.Engine} along a manoeuvre",
-            [| yield! provenance; KeyValuePair("fuel_ratio", string result.FuelRatio) |],
+            [| yield! provenance; StudyTable.Entry("fuel_ratio", result.FuelRatio) |],
             [|
                 numbers "place" "" (fun (p, _) -> p.Place)
                 numbers "pressure_altitude_m" "m" (fun (p, _) -> float p.PressureAltitude)

@@ -174,16 +174,14 @@ type PenaltiesResult = {
         let number name unit (value: PenaltyEffects -> float) =
             TableColumn.Of(name, unit, rows |> Array.map (fun (_, _, _, _, effects, _, _) -> value effects))
 
-        let entry name (value: float) =
-            KeyValuePair(name, value.ToString("R", CultureInfo.InvariantCulture))
 
         StudyTable.Of(
             $"Bleed and power penalties of {result.Engine}, rating {result.Rating}",
             [|
                 yield! provenance
-                entry "net_thrust_held_N" result.AtThrust.NetThrust
-                entry "limit_held" result.Limit.Value
-                entry "break_temperature_K" (float result.BreakTemperature)
+                StudyTable.Entry("net_thrust_held_N", result.AtThrust.NetThrust)
+                StudyTable.Entry("limit_held", result.Limit.Value)
+                StudyTable.Entry("break_temperature_K", float result.BreakTemperature)
             |],
             [|
                 text "group" (fun (group, _, _, _, _, _, _) -> group)

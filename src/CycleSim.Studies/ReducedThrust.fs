@@ -72,19 +72,17 @@ type ReducedThrustResult = {
         let number name unit (value: OperatingPoint -> float) =
             TableColumn.Of(name, unit, rows |> Array.map (fun (_, _, point, _) -> value point))
 
-        let entry name (value: float) =
-            KeyValuePair(name, value.ToString("R", CultureInfo.InvariantCulture))
 
         StudyTable.Of(
             $"Reduced thrust of {result.Engine}, rating {result.Rating}",
             [|
                 yield! provenance
-                entry "pressure_altitude_m" result.Rated.Flight.PressureAltitude
-                entry "mach" result.Rated.Flight.Mach
-                entry "outside_temperature_K" result.Rated.Flight.StaticTemperature
-                entry "break_temperature_K" (float result.BreakTemperature)
-                entry "derate" result.Derate
-                entry "largest_assumed_temperature_K" (float result.Largest.AssumedTemperature)
+                StudyTable.Entry("pressure_altitude_m", result.Rated.Flight.PressureAltitude)
+                StudyTable.Entry("mach", result.Rated.Flight.Mach)
+                StudyTable.Entry("outside_temperature_K", result.Rated.Flight.StaticTemperature)
+                StudyTable.Entry("break_temperature_K", float result.BreakTemperature)
+                StudyTable.Entry("derate", result.Derate)
+                StudyTable.Entry("largest_assumed_temperature_K", float result.Largest.AssumedTemperature)
             |],
             [|
                 TableColumn.OfText("kind", rows |> Array.map (fun (kind, _, _, _) -> kind))

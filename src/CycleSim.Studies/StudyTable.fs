@@ -67,6 +67,10 @@ type StudyTable
             let known = columns |> Seq.map _.Name |> String.concat ", "
             raise (ArgumentException $"there is no column '{name}'; there are {known}")
 
+    /// A number for the provenance, written so that reading it gives the same bits.
+    static member Entry(name: string, value: float) =
+        KeyValuePair(name, value.ToString("R", CultureInfo.InvariantCulture))
+
     /// <exception cref="T:System.ArgumentException">Columns of unequal length, or two of one name.</exception>
     static member Of
         (title: string, provenance: IReadOnlyList<KeyValuePair<string, string>>, columns: IReadOnlyList<TableColumn>)
@@ -81,11 +85,11 @@ type StudyTable
         | Some(name, _) -> invalidArg (nameof columns) $"two columns are called '{name}'"
         | None -> StudyTable(title, provenance, columns)
 
-/// Writes tables to files. A file is whole or not there: it is written aside and renamed.
+/// Writes files that are whole or not there: written aside, then renamed.
 [<AbstractClass; Sealed>]
-type TableFile private () =
+type WholeFile private () =
 
-    static member internal Atomically(path: string, write: Stream -> unit) =
+    static member internal Write(path: string, write: Stream -> unit) =
         let aside = path + ".writing"
 
         try
@@ -96,6 +100,19 @@ type TableFile private () =
             File.Move(aside, path, true)
         finally
             File.Delete aside
+
+    /// <exception cref="T:System.IO.IOException">The file cannot be written; nothing is left behind.</exception>
+    static member WriteText(path: string, text: string) : unit =
+        WholeFile.Write(
+            path,
+            fun stream ->
+                use writer = new StreamWriter(stream, UTF8Encoding false)
+                writer.Write text
+        )
+
+/// Writes tables to files; see WholeFile.
+[<AbstractClass; Sealed>]
+type TableFile private () =
 
     static member internal Field(text: string) =
         if text.IndexOfAny [| ','; '"'; '\n'; '\r' |] >= 0 then
@@ -130,7 +147,7 @@ type TableFile private () =
 
     /// <exception cref="T:System.IO.IOException">The file cannot be written; nothing is left behind.</exception>
     static member WriteCsv(table: StudyTable, path: string) : unit =
-        TableFile.Atomically(
+        WholeFile.Write(
             path,
             fun stream ->
                 use writer = new StreamWriter(stream, UTF8Encoding false, NewLine = "\n")
@@ -185,4 +202,4 @@ type TableFile private () =
                         do! group.WriteAsync<float>(fields[index], ReadOnlyMemory<Nullable<float>> values)
             }
 
-        TableFile.Atomically(path, fun stream -> (write stream).GetAwaiter().GetResult())
+        WholeFile.Write(path, fun stream -> (write stream).GetAwaiter().GetResult())

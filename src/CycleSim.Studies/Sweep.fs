@@ -265,7 +265,7 @@ type Sweep private () =
                 | path ->
                     let result = ref None
 
-                    TableFile.Atomically(
+                    WholeFile.Write(
                         path,
                         fun stream ->
                             let sink = CsvSink(stream, Array.append numbers texts, metadata)
@@ -279,7 +279,7 @@ type Sweep private () =
             | path ->
                 let result = ref None
 
-                TableFile.Atomically(
+                WholeFile.Write(
                     path,
                     fun stream ->
                         let sink = ParquetSink.Open(stream, numbers, texts, metadata)

@@ -143,7 +143,7 @@ type SweepParts private () =
 
         let total = ref 0L
 
-        TableFile.Atomically(
+        WholeFile.Write(
             path,
             fun stream ->
                 let sink: SweepSink =

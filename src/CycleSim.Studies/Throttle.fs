@@ -86,14 +86,12 @@ module internal ThrottleTable =
             TableColumn.OfText("reason", [| for r in rows -> r.Reason |])
         |]
 
-    let entry name (value: float) =
-        KeyValuePair(name, value.ToString("R", CultureInfo.InvariantCulture))
 
     let least (found: LeastConsumption) = [|
         KeyValuePair("least_sfc_where", found.Where)
-        entry "least_sfc_kg_per_N_s" found.Point.Sfc
-        entry "least_sfc_net_thrust_N" found.Point.NetThrust
-        entry "least_sfc_pressure_altitude_m" found.Point.Flight.PressureAltitude
+        StudyTable.Entry("least_sfc_kg_per_N_s", found.Point.Sfc)
+        StudyTable.Entry("least_sfc_net_thrust_N", found.Point.NetThrust)
+        StudyTable.Entry("least_sfc_pressure_altitude_m", found.Point.Flight.PressureAltitude)
     |]
 
 type ThrottleLoop with
@@ -104,8 +102,8 @@ type ThrottleLoop with
             $"Throttle loop of {loop.Engine}",
             [|
                 yield! provenance
-                ThrottleTable.entry "mach" loop.Mach
-                ThrottleTable.entry "isa_offset_K" (float loop.IsaOffset)
+                StudyTable.Entry("mach", loop.Mach)
+                StudyTable.Entry("isa_offset_K", float loop.IsaOffset)
                 yield! ThrottleTable.least loop.Least
             |],
             ThrottleTable.columns loop.Rows
@@ -119,8 +117,8 @@ type BestAltitude with
             $"Altitude for least consumption of {best.Engine}",
             [|
                 yield! provenance
-                ThrottleTable.entry "mach" best.Mach
-                ThrottleTable.entry "isa_offset_K" (float best.IsaOffset)
+                StudyTable.Entry("mach", best.Mach)
+                StudyTable.Entry("isa_offset_K", float best.IsaOffset)
                 yield! ThrottleTable.least best.Least
             |],
             ThrottleTable.columns best.Rows
